@@ -1,0 +1,54 @@
+#include "base/arena.h"
+
+struct tb_chunk {
+    tb_chunk *older;
+    size_t bytes; /* this header included */
+};
+
+enum { CHUNK = 256 * 1024, ALIGN = 16 };
+#define HEADER ((sizeof(tb_chunk) + ALIGN - 1) / ALIGN * ALIGN)
+
+void *tb_arena_take(tb_arena *arena, size_t n, size_t item) {
+    if (item != 0 && n > (size_t)PTRDIFF_MAX / 2 / item)
+        return NULL;
+    size_t bytes = (n * item + ALIGN) / ALIGN * ALIGN; /* at least one unit, so that pointers differ */
+    if (arena->chunks == NULL || arena->chunks->bytes - arena->free_from < bytes) {
+        size_t size = HEADER + bytes > CHUNK ? HEADER + bytes : CHUNK;
+        tb_chunk *chunk = tb_resize(arena->memory, NULL, 0, size, 1);
+        if (chunk == NULL)
+            return NULL;
+        *chunk = (tb_chunk){.older = arena->chunks, .bytes = size};
+        arena->chunks = chunk;
+        arena->free_from = HEADER;
+    }
+    void *block = (char *)arena->chunks + arena->free_from;
+    arena->free_from += bytes;
+    return block;
+}
+
+void *tb_arena_fill(tb_arena *arena, size_t n, size_t item, int fill) {
+    void *block = tb_arena_take(arena, n, item);
+    if (block != NULL)
+        memset(block, fill, n * item);
+    return block;
+}
+
+static void drop(tb_arena *arena, tb_chunk *until) {
+    while (arena->chunks != until) {
+        tb_chunk *older = arena->chunks->older;
+        tb_free(arena->memory, arena->chunks, arena->chunks->bytes, 1);
+        arena->chunks = older;
+    }
+}
+
+void tb_arena_reset(tb_arena *arena) {
+    /* The oldest chunk is kept unless it is large: a big task should not
+     * hold its memory through a run of small ones. */
+    tb_chunk *oldest = arena->chunks;
+    while (oldest != NULL && oldest->older != NULL)
+        oldest = oldest->older;
+    drop(arena, oldest != NULL && oldest->bytes <= 16 * (size_t)CHUNK ? oldest : NULL);
+    arena->free_from = HEADER;
+}
+
+void tb_arena_clear(tb_arena *arena) { drop(arena, NULL); }

@@ -1,0 +1,174 @@
+/* Triangles of a block: cliques of three links with the common part of their stays.
+ *
+ * For each pair of neighbours u < v the common higher neighbours are found from the
+ * shorter of two lists, so that the cost is bounded by the sum over links of the smaller
+ * degree (the arboricity bound of Chiba and Nishizeki, SIAM J. Comput. 14, 1985), hubs included. */
+#include "complex/cells.h"
+
+#include <stdlib.h>
+
+/* Distinct pairs: pair i joins `low` to node[i], its stays are cells start[i] .. start[i + 1] - 1. */
+typedef struct pairs {
+    uint32_t n;
+    uint32_t *high;  /* n: slot of the higher node */
+    uint32_t *start; /* n + 1: link cells */
+    uint32_t *begin; /* slots + 1: pairs whose lower node is a slot, by higher slot */
+    uint32_t slots;  /* distinct nodes that have links, in the order of their numbers */
+} pairs;
+
+static int by_number(const void *a, const void *b) {
+    const uint32_t *x = a, *y = b;
+    return *x < *y ? -1 : *x > *y;
+}
+
+/* Number the nodes of the links 0 .. slots-1 in their order and list the pairs. node_mark is used and restored. */
+static bool list_pairs(tc_work *work, const tc_cells *links, pairs *out) {
+    uint32_t *node = TB_TAKE(work->arena, uint32_t, 2 * (size_t)links->n);
+    out->high = TB_TAKE(work->arena, uint32_t, links->n);
+    out->start = TB_TAKE(work->arena, uint32_t, (size_t)links->n + 1);
+    out->begin = TB_FILL(work->arena, uint32_t, 2 * (size_t)links->n + 2, 0);
+    if (node == NULL || out->high == NULL || out->start == NULL || out->begin == NULL)
+        return false;
+    out->slots = out->n = 0;
+    for (uint32_t i = 0; i < 2 * links->n; i++) {
+        if (work->node_mark[links->node[i]] == TC_NONE) {
+            work->node_mark[links->node[i]] = 0;
+            node[out->slots++] = links->node[i];
+        }
+    }
+    qsort(node, out->slots, sizeof *node, by_number);
+    for (uint32_t i = 0; i < out->slots; i++)
+        work->node_mark[node[i]] = i;
+    for (uint32_t i = 0; i < links->n; i++) {
+        const uint32_t *ends = &links->node[2 * i];
+        if (i > 0 && ends[0] == ends[-2] && ends[1] == ends[-1])
+            continue;
+        out->high[out->n] = work->node_mark[ends[1]];
+        out->start[out->n++] = i;
+        out->begin[work->node_mark[ends[0]] + 1]++;
+    }
+    out->start[out->n] = links->n;
+    for (uint32_t i = 0; i < out->slots; i++)
+        out->begin[i + 1] += out->begin[i];
+    for (uint32_t i = 0; i < out->slots; i++)
+        work->node_mark[node[i]] = TC_NONE;
+    return true;
+}
+
+typedef struct triangle {
+    uint32_t first, last, face[3];
+} triangle;
+
+typedef struct search {
+    tc_work *work;
+    const tc_block *block;
+    const tc_cells *links;
+    pairs pairs;
+    TB_VEC(triangle) found;
+} search;
+
+/* The common part of the stays of three pairs: all three lists ascend and do not overlap themselves. */
+static bool meet(search *s, uint32_t p, uint32_t q, uint32_t r) {
+    const uint32_t *first = s->links->first, *last = s->links->last, *start = s->pairs.start;
+    uint32_t i = start[p], j = start[q], k = start[r];
+    while (i < start[p + 1] && j < start[q + 1] && k < start[r + 1]) {
+        uint32_t lo = first[i] > first[j] ? first[i] : first[j], hi = last[i] < last[j] ? last[i] : last[j];
+        lo = first[k] > lo ? first[k] : lo;
+        hi = last[k] < hi ? last[k] : hi;
+        if (lo <= hi && !TB_VEC_PUSH(s->work->context->memory, &s->found, ((triangle){lo, hi, {i, j, k}})))
+            return false;
+        if (last[i] == hi)
+            i++;
+        else if (last[j] == hi)
+            j++;
+        else if (last[k] == hi)
+            k++;
+        else if (last[i] <= last[j] && last[i] <= last[k]) /* hi < lo: move the one that ends first */
+            i++;
+        else if (last[j] <= last[k])
+            j++;
+        else
+            k++;
+    }
+    return true;
+}
+
+/* The pair (low slot's list from..to) whose higher slot is `high`, or TC_NONE. */
+static uint32_t find_pair(const pairs *g, uint32_t from, uint32_t to, uint32_t high) {
+    uint32_t end = to;
+    while (from < to) {
+        uint32_t middle = from + (to - from) / 2;
+        if (g->high[middle] < high)
+            from = middle + 1;
+        else
+            to = middle;
+    }
+    return from < end && g->high[from] == high ? from : TC_NONE;
+}
+
+/* All triangles whose lowest node is slot u; mark[] maps the higher slots of u to their pairs + 1. */
+static bool triangles_at(search *s, uint32_t u, uint32_t *mark) {
+    const pairs *g = &s->pairs;
+    uint32_t from = g->begin[u], to = g->begin[u + 1];
+    for (uint32_t p = from; p < to; p++)
+        mark[g->high[p]] = p + 1;
+    bool fine = true;
+    for (uint32_t p = from; fine && p < to; p++) {
+        uint32_t v = g->high[p], vfrom = g->begin[v], vto = g->begin[v + 1];
+        if (vto - vfrom <= to - p) {
+            for (uint32_t r = vfrom; fine && r < vto; r++)
+                fine = mark[g->high[r]] == 0 || meet(s, p, mark[g->high[r]] - 1, r);
+        } else {
+            for (uint32_t q = p + 1; fine && q < to; q++) {
+                uint32_t r = find_pair(g, vfrom, vto, g->high[q]);
+                fine = r == TC_NONE || meet(s, p, q, r);
+            }
+        }
+    }
+    for (uint32_t p = from; p < to; p++)
+        mark[g->high[p]] = 0;
+    return fine;
+}
+
+static bool keep_found(search *s, tc_cells *out, bool with_nodes) {
+    tb_arena *arena = s->work->arena;
+    out->n = (uint32_t)s->found.n;
+    out->first = TB_TAKE(arena, uint32_t, out->n);
+    out->last = TB_TAKE(arena, uint32_t, out->n);
+    out->face = TB_TAKE(arena, uint32_t, 3 * (size_t)out->n);
+    out->node = with_nodes ? TB_TAKE(arena, uint32_t, 3 * (size_t)out->n) : NULL;
+    if (out->first == NULL || out->last == NULL || out->face == NULL || (with_nodes && out->node == NULL))
+        return false;
+    for (uint32_t i = 0; i < out->n; i++) {
+        const triangle *t = &s->found.at[i];
+        out->first[i] = t->first;
+        out->last[i] = t->last;
+        memcpy(&out->face[3 * (size_t)i], t->face, sizeof t->face);
+        if (with_nodes) {
+            out->node[3 * (size_t)i] = s->links->node[2 * (size_t)t->face[0]];
+            out->node[3 * (size_t)i + 1] = s->links->node[2 * (size_t)t->face[0] + 1];
+            out->node[3 * (size_t)i + 2] = s->links->node[2 * (size_t)t->face[1] + 1];
+        }
+    }
+    return true;
+}
+
+thole_status tc_triangles(tc_work *work, tc_block *block) {
+    search s = {.work = work, .block = block, .links = &block->cells[1]};
+    thole_memory *memory = work->context->memory;
+    uint32_t *mark = NULL;
+    bool fine = list_pairs(work, s.links, &s.pairs);
+    fine = fine && (mark = TB_FILL(work->arena, uint32_t, s.pairs.slots, 0)) != NULL;
+    thole_status status = THOLE_OK;
+    for (uint32_t u = 0; fine && u < s.pairs.slots; u++) {
+        if ((u & 63) == 0 && tb_cancelled(work->context)) {
+            status = thole_fail(work->error, THOLE_CANCELLED, "stopped while finding triangles");
+            break;
+        }
+        fine = triangles_at(&s, u, mark) && s.found.n < UINT32_MAX / 4;
+    }
+    if (status == THOLE_OK && !(fine = fine && keep_found(&s, &block->cells[2], block->top > 2)))
+        status = tc_cells_refused(work, block, 2, s.found.n);
+    TB_VEC_CLEAR(memory, &s.found);
+    return status;
+}
