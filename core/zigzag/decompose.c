@@ -130,7 +130,10 @@ static bool component_bars(parts *x) {
             continue;
         uint32_t a = back->at[t];
         FIND(a);
-        if (!tz_closed_bar(x->work, &x->addition, &x->back, 0, root[a], t, &root[a], 1, &t, 1, x->out))
+        tz_span *span = &x->out->dim[0];
+        if (!tz_closed_bar(x->work, &x->addition, &x->back, 0, root[a], t, x->out) ||
+            (root[a] < add->at_edge && !tz_end_item(x->out->memory, &span->left, root[a])) ||
+            (t < back->at_edge && !tz_end_item(x->out->memory, &span->right, t)))
             return false;
     }
 #undef FIND
@@ -161,8 +164,10 @@ static thole_status all_bars(parts *x) {
     for (int p = 1; status == THOLE_OK && p <= x->block->top; p++) {
         if (p == x->block->top && p >= 2)
             break; /* done with the coboundaries */
-        status = tz_mixed(x->work, &x->addition, &x->back, p, p < x->block->top ? &x->columns[TZ_ADDITION][p + 1] : NULL,
-                          p >= 2 ? &x->columns[TZ_BACK][p] : NULL, x->wanted, x->out);
+        bool top = p == x->block->top;
+        status = tz_mixed(x->work, &x->addition, &x->back, p, top ? NULL : &x->columns[TZ_ADDITION][p + 1],
+                          p >= 2 ? &x->columns[TZ_BACK][p] : NULL, top ? NULL : &x->columns[TZ_BACK][p + 1], x->wanted,
+                          x->out);
     }
     return status;
 }

@@ -31,7 +31,7 @@ static bool lay_out(tz_work *work, const tz_forest *f, const uint32_t *links, ui
 }
 
 /* Root every tree by a search from each node not yet reached. */
-static bool root_trees(tz_work *work, tz_forest *f, const hedge *h, const tz_order *addition, uint32_t nodes) {
+static bool root_trees(tz_work *work, tz_forest *f, const hedge *h, uint32_t nodes) {
     const uint32_t *face = f->block->cells[1].face;
     uint32_t *queue = TB_TAKE(work->arena, uint32_t, nodes);
     if (queue == NULL)
@@ -41,7 +41,6 @@ static bool root_trees(tz_work *work, tz_forest *f, const hedge *h, const tz_ord
             continue;
         uint32_t head = 0, tail = 0;
         f->parent[root] = root;
-        f->depth[root] = 0;
         queue[tail++] = root;
         while (head < tail) {
             uint32_t x = queue[head++];
@@ -51,8 +50,7 @@ static bool root_trees(tz_work *work, tz_forest *f, const hedge *h, const tz_ord
                 if (f->parent[y] != TC_NONE)
                     continue;
                 f->parent[y] = x;
-                f->parent_link[y] = addition->dim[1].rank[h->cell[i]];
-                f->depth[y] = f->depth[x] + 1;
+                f->link[y] = h->cell[i];
                 queue[tail++] = y;
             }
         }
@@ -64,13 +62,13 @@ bool tz_forest_make(tz_work *work, const tz_order *addition, const tz_order *bac
     const tc_block *block = addition->block;
     const tc_cells *links = &block->cells[1];
     uint32_t nodes = block->cells[0].n, n = 0;
-    out->block = block;
+    *out = (tz_forest){.block = block, .rank = addition->dim[1].rank, .memory = work->context->memory};
     out->super = TB_TAKE(work->arena, uint32_t, nodes);
     out->parent = TB_FILL(work->arena, uint32_t, nodes, 0xFF);
-    out->parent_link = TB_TAKE(work->arena, uint32_t, nodes);
-    out->depth = TB_TAKE(work->arena, uint32_t, nodes);
+    out->link = TB_TAKE(work->arena, uint32_t, nodes);
+    out->stamp = TB_FILL(work->arena, uint32_t, nodes, 0);
     uint32_t *kept = TB_TAKE(work->arena, uint32_t, nodes); /* a forest: fewer links than nodes */
-    if (out->super == NULL || out->parent == NULL || out->parent_link == NULL || out->depth == NULL || kept == NULL)
+    if (out->super == NULL || out->parent == NULL || out->link == NULL || out->stamp == NULL || kept == NULL)
         return false;
     for (uint32_t i = 0; i < nodes; i++)
         out->super[i] = i;
@@ -78,7 +76,7 @@ bool tz_forest_make(tz_work *work, const tz_order *addition, const tz_order *bac
         if (back->dim[1].victim[r] == TC_NONE)
             continue;
         uint32_t cell = back->dim[1].at[r];
-        if (addition->dim[1].victim[addition->dim[1].rank[cell]] == TC_NONE) {
+        if (addition->dim[1].victim[out->rank[cell]] == TC_NONE) {
             kept[n++] = cell;
             continue;
         }
@@ -88,19 +86,81 @@ bool tz_forest_make(tz_work *work, const tz_order *addition, const tz_order *bac
     for (uint32_t i = 0; i < nodes; i++)
         out->super[i] = root_of(out->super, i);
     hedge h;
-    return lay_out(work, out, kept, n, nodes, &h) && root_trees(work, out, &h, addition, nodes);
+    return lay_out(work, out, kept, n, nodes, &h) && root_trees(work, out, &h, nodes);
 }
 
-void tz_forest_path(const tz_forest *f, uint32_t link_cell, tz_bits *rows) {
+void tz_forest_clear(tz_forest *forest) {
+    if (forest->memory == NULL)
+        return;
+    TB_VEC_CLEAR(forest->memory, &forest->side[0]);
+    TB_VEC_CLEAR(forest->memory, &forest->side[1]);
+}
+
+/* Climb from both ends by turns until one meets what the other has seen. side[k] then holds the nodes whose
+ * links to their parents lie between end k and the meeting point. */
+static bool climb(tz_forest *f, uint32_t a, uint32_t b) {
+    uint32_t at[2] = {a, b}, search = ++f->searches;
+    bool top[2] = {false, false};
+    f->side[0].n = f->side[1].n = 0;
+    if (a == b)
+        return true;
+    f->stamp[a] = f->stamp[b] = search;
+    for (int k = 0;; k ^= top[k ^ 1] ? 0 : 1) {
+        uint32_t x = at[k], up = f->parent[x];
+        if (up == x) {
+            top[k] = true;
+            if (top[k ^ 1])
+                return false; /* two trees: cannot happen for a link that closes a cycle */
+            continue;
+        }
+        if (!TB_VEC_PUSH(f->memory, &f->side[k], x))
+            return false;
+        at[k] = up;
+        if (f->stamp[up] == search) { /* where the other end's climb passed, or began */
+            uint32_t other = k == 0 ? b : a;
+            size_t n = 0;
+            for (; other != up; other = f->parent[other])
+                n++;
+            f->side[k ^ 1].n = n;
+            return true;
+        }
+        f->stamp[up] = search;
+    }
+}
+
+/* Hang the tree below the cut from `end` instead: the parents of side[0 .. last] are turned round. */
+static void turn_round(tz_forest *f, const uint32_t *side, size_t last, uint32_t parent, uint32_t link) {
+    for (size_t i = 0; i <= last; i++) {
+        uint32_t x = side[i], old_link = f->link[x];
+        f->parent[x] = parent;
+        f->link[x] = link;
+        parent = x;
+        link = old_link;
+    }
+}
+
+bool tz_forest_exchange(tz_forest *f, uint32_t link_cell, uint32_t *cycle, size_t *n, uint32_t *out) {
     const uint32_t *face = &f->block->cells[1].face[2 * (size_t)link_cell];
     uint32_t a = f->super[face[0]], b = f->super[face[1]];
-    while (a != b) {
-        if (f->depth[a] < f->depth[b]) {
-            uint32_t c = a;
-            a = b;
-            b = c;
+    if (!climb(f, a, b))
+        return false;
+    uint32_t last = link_cell;
+    int cut_side = -1;
+    size_t cut = 0, count = 0;
+    cycle[count++] = link_cell;
+    for (int k = 0; k < 2; k++)
+        for (size_t i = 0; i < f->side[k].n; i++) {
+            uint32_t cell = f->link[f->side[k].at[i]];
+            cycle[count++] = cell;
+            if (f->rank[cell] > f->rank[last]) {
+                last = cell;
+                cut_side = k;
+                cut = i;
+            }
         }
-        tz_bits_toggle(rows, f->parent_link[a]);
-        a = f->parent[a];
-    }
+    if (cut_side >= 0)
+        turn_round(f, f->side[cut_side].at, cut, cut_side == 0 ? b : a, link_cell);
+    *n = count;
+    *out = last;
+    return true;
 }

@@ -18,7 +18,7 @@ bool tz_edge_coordinates(thole_memory *memory, const tz_columns *columns, tz_bit
 }
 
 bool tz_closed_bar(tz_work *work, const tz_order *addition, const tz_order *back, int p, uint32_t s, uint32_t t,
-                   const uint32_t *r, size_t r_count, const uint32_t *c, size_t c_count, tz_value *out) {
+                   tz_value *out) {
     thole_memory *memory = work->context->memory;
     tz_span *span = &out->dim[p];
     bool left = s < addition->dim[p].at_edge, right = t < back->dim[p].at_edge;
@@ -26,23 +26,9 @@ bool tz_closed_bar(tz_work *work, const tz_order *addition, const tz_order *back
     if (!left && !right)
         return tz_span_bar(memory, span, p, first, TZ_BY_ADDITION, last, TZ_BY_DELETION);
     uint32_t left_number = (uint32_t)span->left.bar.n, right_number = (uint32_t)span->right.bar.n;
-    if (left) {
-        tz_touch touch = {last, right ? right_number : TC_NONE, right ? TZ_REACHES : TZ_BY_DELETION};
-        if (!tz_end_open(memory, &span->left, touch))
-            return false;
-        for (size_t i = 0; i < r_count; i++)
-            if (!tz_end_item(memory, &span->left, r[i]))
-                return false;
-    }
-    if (right) {
-        tz_touch touch = {first, left ? left_number : TC_NONE, left ? TZ_REACHES : TZ_BY_ADDITION};
-        if (!tz_end_open(memory, &span->right, touch))
-            return false;
-        for (size_t i = 0; i < c_count; i++)
-            if (!tz_end_item(memory, &span->right, c[i]))
-                return false;
-    }
-    return true;
+    tz_touch at_left = {last, right ? right_number : TC_NONE, right ? TZ_REACHES : TZ_BY_DELETION};
+    tz_touch at_right = {first, left ? left_number : TC_NONE, left ? TZ_REACHES : TZ_BY_ADDITION};
+    return (!left || tz_end_open(memory, &span->left, at_left)) && (!right || tz_end_open(memory, &span->right, at_right));
 }
 
 /* ---- cycles, reduced in addition order -------------------------------------- */
@@ -51,32 +37,25 @@ typedef struct mixer {
     tz_work *work;
     const tz_order *addition, *back;
     int p;
-    const tz_columns *killers, *cycles;
-    tz_forest forest;
+    const tz_columns *killers, *cycles, *back_killers;
+    tz_forest forest;        /* links: their cycles come from here */
+    uint32_t *path;          /* room for one of them */
     tz_bits rows;     /* addition ranks of births */
     tz_bits sums;     /* back ranks: the births whose cycles were added up */
     tz_bits chain, boundary; /* for p >= 2: drawing a cycle */
     uint32_t *claim;  /* addition rank -> the back rank whose cycle ends there, or TC_NONE */
     tz_lists cycle;   /* addition rank -> the reduced cycle's rows, when they are more than that one */
-    tz_lists made_of; /* addition rank -> the back ranks added up, for cycles at the right edge, when more than one */
+    tz_lists made_of; /* addition rank -> the back ranks added up, for cycles at the right edge */
     bool bars, gaps;  /* whether closed-closed bars of p, open-open ones of p - 1 are wanted */
     tz_value *out;
     TB_VEC(uint32_t) r;
     TB_VEC(uint32_t) c;
 } mixer;
 
-/* The cycle that back birth t closes, on addition births. */
+/* The cycle that back birth t closes, on addition births, for p >= 2: its boundary, killed by the columns of
+ * the back order, and what those are made of. */
 static void draw_cycle(mixer *m, uint32_t t) {
-    const tz_rank *add = &m->addition->dim[m->p], *back = &m->back->dim[m->p];
-    if (m->p == 1) {
-        uint32_t cell = back->at[t], r = add->rank[cell];
-        tz_forest_path(&m->forest, cell, &m->rows);
-        if (add->victim[r] == TC_NONE)
-            tz_bits_toggle(&m->rows, r);
-        return;
-    }
-    /* Its boundary, killed by the columns of the back order; what they are made of closes it. */
-    const tz_rank *low = &m->back->dim[m->p - 1];
+    const tz_rank *add = &m->addition->dim[m->p], *back = &m->back->dim[m->p], *low = &m->back->dim[m->p - 1];
     uint32_t faces = (uint32_t)m->p + 1;
     const uint32_t *face = &m->back->block->cells[m->p].face[(size_t)back->at[t] * faces];
     for (uint32_t i = 0; i < faces; i++)
@@ -93,34 +72,38 @@ static void draw_cycle(mixer *m, uint32_t t) {
     }
 }
 
-/* Reduce rows to a pivot that no cycle has yet, keeping the sum in `sums` when `at_edge`. */
-static uint32_t reduce(mixer *m, bool at_edge) {
+/* Add to rows the cycle that ends at `high`, and to `sums` what it is made of when `at_edge`. */
+static void add_claimed(mixer *m, uint32_t high, bool at_edge) {
+    uint32_t start = m->cycle.start[high];
+    if (start == TC_NONE)
+        tz_bits_toggle(&m->rows, high);
+    else
+        for (uint32_t i = 0; i < m->cycle.length[high]; i++)
+            tz_bits_toggle(&m->rows, m->cycle.item.at[start + i]);
+    if (!at_edge)
+        return;
+    start = m->made_of.start[high]; /* there: cycles at the edge come first */
+    for (uint32_t i = 0; i < m->made_of.length[high]; i++)
+        tz_bits_toggle(&m->sums, m->made_of.item.at[start + i]);
+}
+
+/* Reduce rows until no entry is killed or claimed, into m->r, highest first. Reducing past the pivot
+ * keeps cycles as short as paths in a forest: stopping at it lets them fill in. */
+static bool reduce(mixer *m, bool at_edge) {
     const tz_rank *add = &m->addition->dim[m->p];
-    for (uint32_t high;;) {
-        high = tz_bits_highest(&m->rows);
-        if (high == TZ_EMPTY)
-            return high;
+    m->r.n = 0;
+    for (uint32_t high; (high = tz_bits_highest(&m->rows)) != TZ_EMPTY;) {
         if (add->killer[high] != TC_NONE) {
             tz_columns_add(m->killers, add->killer[high], &m->rows, NULL);
-            continue;
-        }
-        if (m->claim[high] == TC_NONE)
-            return high;
-        uint32_t start = m->cycle.start[high];
-        if (start == TC_NONE)
+        } else if (m->claim[high] != TC_NONE) {
+            add_claimed(m, high, at_edge);
+        } else {
             tz_bits_toggle(&m->rows, high);
-        else
-            for (uint32_t i = 0; i < m->cycle.length[high]; i++)
-                tz_bits_toggle(&m->rows, m->cycle.item.at[start + i]);
-        if (!at_edge)
-            continue;
-        start = m->made_of.start[high];
-        if (start == TC_NONE)
-            tz_bits_toggle(&m->sums, m->claim[high]);
-        else
-            for (uint32_t i = 0; i < m->made_of.length[high]; i++)
-                tz_bits_toggle(&m->sums, m->made_of.item.at[start + i]);
+            if (!TB_VEC_PUSH(m->work->context->memory, &m->r, high))
+                return false;
+        }
     }
+    return true;
 }
 
 #define DRAIN(m, bits, vector)                                                                               \
@@ -133,58 +116,116 @@ static uint32_t reduce(mixer *m, bool at_edge) {
         }                                                                                                    \
     } while (0)
 
-/* The bar of s and t, whose cycle's rows are r and making c. */
-static bool write_bar(mixer *m, uint32_t s, uint32_t t) {
-    thole_memory *memory = m->work->context->memory;
-    uint32_t base = m->out->first, first = tz_time(m->addition, m->p, s), last = tz_time(m->back, m->p, t);
-    if (first > last)
-        return !m->gaps || tz_span_bar(memory, &m->out->dim[m->p - 1], m->p - 1, base + last + 1, TZ_BY_DELETION,
-                                       base + first - 1, TZ_BY_ADDITION);
-    if (!m->bars)
-        return true;
-    bool left = s < m->addition->dim[m->p].at_edge;
-    if (!left || m->killers == NULL) /* with nothing to kill them the rows are coordinates */
-        return tz_closed_bar(m->work, m->addition, m->back, m->p, s, t, m->r.at, m->r.n, m->c.at, m->c.n, m->out);
-    tz_end *end = &m->out->dim[m->p].left;
-    for (size_t i = 0; i < m->r.n; i++)
-        tz_bits_toggle(&m->rows, m->r.at[i]);
-    return tz_closed_bar(m->work, m->addition, m->back, m->p, s, t, NULL, 0, m->c.at, m->c.n, m->out) &&
-           tz_edge_coordinates(memory, m->killers, &m->rows, end);
+/* The class of a cycle at one edge, as the items of the bar opened last there. */
+static bool write_class(mixer *m, const tz_columns *killers, const uint32_t *items, size_t n, tz_bits *set, tz_end *end) {
+    for (size_t i = 0; i < n; i++)
+        if (killers == NULL) {
+            if (!tz_end_item(m->work->context->memory, end, items[i]))
+                return false;
+        } else {
+            tz_bits_toggle(set, items[i]);
+        }
+    return killers == NULL || tz_edge_coordinates(m->work->context->memory, killers, set, end);
 }
 
-static bool mix_one(mixer *m, uint32_t t, thole_status *status) {
-    bool at_edge = t < m->back->dim[m->p].at_edge;
-    draw_cycle(m, t);
-    if (at_edge)
-        tz_bits_toggle(&m->sums, t);
-    uint32_t s = reduce(m, at_edge);
-    if (s == TZ_EMPTY) {
-        *status = thole_fail(m->work->error, THOLE_ARGUMENT, "a cycle was lost in windows %u to %u: please report this as a fault of Thole",
+/* The bar of s and t, whose cycle's births are r in addition order and c in back order. */
+static bool write_bar(mixer *m, uint32_t s, uint32_t t) {
+    uint32_t base = m->out->first, first = tz_time(m->addition, m->p, s), last = tz_time(m->back, m->p, t);
+    if (first > last)
+        return !m->gaps || tz_span_bar(m->work->context->memory, &m->out->dim[m->p - 1], m->p - 1, base + last + 1,
+                                       TZ_BY_DELETION, base + first - 1, TZ_BY_ADDITION);
+    if (!m->bars)
+        return true;
+    tz_span *span = &m->out->dim[m->p];
+    if (!tz_closed_bar(m->work, m->addition, m->back, m->p, s, t, m->out))
+        return false;
+    bool left = s < m->addition->dim[m->p].at_edge, right = t < m->back->dim[m->p].at_edge;
+    return (!left || write_class(m, m->killers, m->r.at, m->r.n, &m->rows, &span->left)) &&
+           (!right || write_class(m, m->back_killers, m->c.at, m->c.n, &m->sums, &span->right));
+}
+
+/* Reduce the cycle in rows, claim its pivot for t, and write the bar. */
+static bool mix_one(mixer *m, uint32_t t, bool at_edge, thole_status *status) {
+    if (!reduce(m, at_edge))
+        return false;
+    if (m->r.n == 0) {
+        *status = thole_fail(m->work->error, THOLE_ARGUMENT,
+                             "a cycle was lost in windows %u to %u: please report this as a fault of Thole",
                              m->out->first / 2 + 1, (m->out->last + 1) / 2 + 1);
         return true;
     }
-    DRAIN(m, &m->rows, &m->r);
+    uint32_t s = m->r.at[0];
     DRAIN(m, &m->sums, &m->c);
     m->claim[s] = t;
     return (m->r.n == 1 || tz_lists_add(&m->cycle, s, m->r.at, m->r.n)) &&
-           (m->c.n <= 1 || tz_lists_add(&m->made_of, s, m->c.at, m->c.n)) && write_bar(m, s, t);
+           (m->c.n == 0 || tz_lists_add(&m->made_of, s, m->c.at, m->c.n)) && write_bar(m, s, t);
+}
+
+/* One back birth of dimension >= 2 that nothing kills. */
+static bool mix_cell(mixer *m, uint32_t t, thole_status *status) {
+    draw_cycle(m, t);
+    bool at_edge = t < m->back->dim[m->p].at_edge;
+    if (at_edge)
+        tz_bits_toggle(&m->sums, t);
+    return mix_one(m, t, at_edge, status);
+}
+
+/* One link that closes a cycle in the back order. The cycle that the forest gives is already reduced by those
+ * before it: its last link in addition order is a pivot of its own, and its part on births of the back order says
+ * what it is made of. Only triangles are left to be reckoned with. */
+static bool mix_link(mixer *m, uint32_t t, thole_status *status) {
+    const tz_rank *add = &m->addition->dim[1], *back = &m->back->dim[1];
+    bool at_edge = t < back->at_edge;
+    size_t n;
+    uint32_t pivot;
+    if (!tz_forest_exchange(&m->forest, back->at[t], m->path, &n, &pivot))
+        return false;
+    if (back->killer[t] != TC_NONE)
+        return true; /* a triangle kills it: no bar, but the forest must go on from here */
+    if (m->killers == NULL) {
+        uint32_t s = add->rank[pivot];
+        m->r.n = m->c.n = 0;
+        for (size_t i = 0; i < n; i++) {
+            uint32_t r = add->rank[m->path[i]], c = back->rank[m->path[i]];
+            if (s < add->at_edge && add->victim[r] == TC_NONE && !TB_VEC_PUSH(m->work->context->memory, &m->r, r))
+                return false;
+            if (at_edge && back->victim[c] == TC_NONE && !TB_VEC_PUSH(m->work->context->memory, &m->c, c))
+                return false;
+        }
+        return write_bar(m, s, t);
+    }
+    for (size_t i = 0; i < n; i++) {
+        uint32_t r = add->rank[m->path[i]], c = back->rank[m->path[i]];
+        if (add->victim[r] == TC_NONE)
+            tz_bits_toggle(&m->rows, r);
+        if (at_edge && back->victim[c] == TC_NONE)
+            tz_bits_toggle(&m->sums, c);
+    }
+    return mix_one(m, t, at_edge, status);
 }
 
 static bool mixer_make(mixer *m) {
     tb_arena *arena = m->work->arena;
     const tc_block *block = m->addition->block;
     uint32_t n = block->cells[m->p].n;
+    if (m->p == 1) {
+        m->path = TB_TAKE(arena, uint32_t, (size_t)block->cells[0].n + 1);
+        if (m->path == NULL || !tz_forest_make(m->work, m->addition, m->back, &m->forest))
+            return false;
+        if (m->killers == NULL)
+            return true;
+    }
     m->claim = TB_FILL(arena, uint32_t, n, 0xFF);
-    bool fine = m->claim != NULL && tz_bits_make(arena, n, &m->rows) && tz_bits_make(arena, n, &m->sums) &&
-                tz_lists_make(m->work, n, &m->cycle) && tz_lists_make(m->work, n, &m->made_of);
-    if (m->p == 1)
-        return fine && tz_forest_make(m->work, m->addition, m->back, &m->forest);
-    return fine && tz_bits_make(arena, n, &m->chain) && tz_bits_make(arena, block->cells[m->p - 1].n, &m->boundary);
+    return m->claim != NULL && tz_bits_make(arena, n, &m->rows) && tz_bits_make(arena, n, &m->sums) &&
+           tz_lists_make(m->work, n, &m->cycle) && tz_lists_make(m->work, n, &m->made_of) &&
+           (m->p == 1 ||
+            (tz_bits_make(arena, n, &m->chain) && tz_bits_make(arena, block->cells[m->p - 1].n, &m->boundary)));
 }
 
 thole_status tz_mixed(tz_work *work, const tz_order *addition, const tz_order *back, int p, const tz_columns *killers,
-                      const tz_columns *cycles, uint32_t wanted, tz_value *out) {
-    mixer m = {.work = work, .addition = addition, .back = back, .p = p, .killers = killers, .cycles = cycles, .out = out};
+                      const tz_columns *cycles, const tz_columns *back_killers, uint32_t wanted, tz_value *out) {
+    mixer m = {.work = work, .addition = addition, .back = back, .p = p, .killers = killers, .cycles = cycles,
+               .back_killers = back_killers, .out = out};
     m.bars = p < out->dims && (wanted >> p & 1) != 0;
     m.gaps = (wanted >> (p - 1) & 1) != 0;
     if (!m.bars && !m.gaps)
@@ -194,15 +235,16 @@ thole_status tz_mixed(tz_work *work, const tz_order *addition, const tz_order *b
     uint32_t n = addition->block->cells[p].n;
     bool fine = mixer_make(&m);
     for (uint32_t t = 0; fine && status == THOLE_OK && t < n; t++) {
-        if (births->victim[t] != TC_NONE || births->killer[t] != TC_NONE)
+        if (births->victim[t] != TC_NONE || (p > 1 && births->killer[t] != TC_NONE))
             continue;
         if ((t & 63) == 0 && tb_cancelled(work->context))
             status = thole_fail(work->error, THOLE_CANCELLED, "stopped in the zigzag");
         else
-            fine = mix_one(&m, t, &status);
+            fine = p == 1 ? mix_link(&m, t, &status) : mix_cell(&m, t, &status);
     }
     tz_lists_clear(&m.cycle);
     tz_lists_clear(&m.made_of);
+    tz_forest_clear(&m.forest);
     TB_VEC_CLEAR(work->context->memory, &m.r);
     TB_VEC_CLEAR(work->context->memory, &m.c);
     return status != THOLE_OK ? status : fine ? THOLE_OK : tz_refused(work, addition->block);

@@ -6,20 +6,20 @@
 #include "zigzag/value.h"
 
 /* Dimension p, 1 <= p <= top (p = top only for links): closed-closed bars of dimension p, open-open ones of
- * p - 1. killers: addition columns of dimension p + 1 (NULL at the top); cycles: back columns of dimension p with
- * their making (NULL for links, whose cycles come from the spanning forest). */
+ * p - 1. killers, back_killers: addition and back columns of dimension p + 1 (NULL at the top); cycles: back columns
+ * of dimension p with their making (NULL for links, whose cycles come from the spanning forest). */
 thole_status tz_mixed(tz_work *work, const tz_order *addition, const tz_order *back, int p, const tz_columns *killers,
-                      const tz_columns *cycles, uint32_t wanted, tz_value *out);
+                      const tz_columns *cycles, const tz_columns *back_killers, uint32_t wanted, tz_value *out);
 
 /* The top dimension T >= 2, whose closed-closed bars nobody asks for: open-open bars of T - 1 from
  * coboundaries. cocycles: the back order's for dimension T. */
 thole_status tz_mixed_top(tz_work *work, const tz_order *addition, const tz_order *back, const tz_cofaces *cofaces,
                           const tz_lists *cocycles, tz_value *out);
 
-/* Add the closed-closed bar of births s (addition rank) and t (back rank) of dimension p; r and c are its class at the
- * left and at the right end, in coordinates, used where the bar touches that end. */
+/* Add the closed-closed bar of births s (addition rank) and t (back rank) of dimension p. Where it touches an end
+ * of the block it is the bar opened last there, and the caller adds its class. */
 bool tz_closed_bar(tz_work *work, const tz_order *addition, const tz_order *back, int p, uint32_t s, uint32_t t,
-                   const uint32_t *r, size_t r_count, const uint32_t *c, size_t c_count, tz_value *out);
+                   tz_value *out);
 
 /* The class of the cycle in `rows` (births of dimension d - 1, all at the edge) in the edge's coordinates, as the items of the
  * bar opened last on `end`; empties rows. */
