@@ -1,7 +1,8 @@
 #include "complex/cells.h"
 
 #include <stdio.h>
-#include <stdlib.h>
+
+#include "base/sort.h"
 
 /* Bytes that a cell takes in the block and its reduction, about: for the estimate only. */
 enum { BYTES_A_CELL = 64 };
@@ -71,11 +72,6 @@ typedef struct node_stay {
     uint32_t node, first, last, next;
 } node_stay;
 
-static int by_number(const void *a, const void *b) {
-    const uint32_t *x = a, *y = b;
-    return *x < *y ? -1 : *x > *y;
-}
-
 /* Node cells from the links: a node is there while one of its links is. node_mark[v] is left holding v's
  * first cell; the caller clears it. head and tail are per distinct node. */
 static thole_status node_cells(tc_work *work, const tc_links *links, uint32_t length, tc_cells *out) {
@@ -112,7 +108,7 @@ static thole_status node_cells(tc_work *work, const tc_links *links, uint32_t le
     out->last = TB_TAKE(work->arena, uint32_t, stays);
     out->node = TB_TAKE(work->arena, uint32_t, stays);
     bool fine = out->first != NULL && out->last != NULL && out->node != NULL;
-    qsort(node, nodes, sizeof *node, by_number);
+    tb_sort_by_u32(node, tail, nodes, sizeof *node, 0); /* tail is done with */
     for (uint32_t i = 0, n = 0; i < nodes; i++) {
         uint32_t slot = work->node_mark[node[i]];
         work->node_mark[node[i]] = fine ? n : TC_NONE;

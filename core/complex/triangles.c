@@ -5,8 +5,6 @@
  * degree (the arboricity bound of Chiba and Nishizeki, SIAM J. Comput. 14, 1985), hubs included. */
 #include "complex/cells.h"
 
-#include <stdlib.h>
-
 /* Distinct pairs: pair i joins `low` to node[i], its stays are cells start[i] .. start[i + 1] - 1. */
 typedef struct pairs {
     uint32_t n;
@@ -16,31 +14,19 @@ typedef struct pairs {
     uint32_t slots;  /* distinct nodes that have links, in the order of their numbers */
 } pairs;
 
-static int by_number(const void *a, const void *b) {
-    const uint32_t *x = a, *y = b;
-    return *x < *y ? -1 : *x > *y;
-}
-
-/* Number the nodes of the links 0 .. slots-1 in their order and list the pairs. node_mark is used and restored. */
-static bool list_pairs(tc_work *work, const tc_cells *links, pairs *out) {
-    uint32_t *node = TB_TAKE(work->arena, uint32_t, 2 * (size_t)links->n);
+/* Number the nodes 0 .. slots-1 in their order and list the pairs. node_mark is used and restored. */
+static bool list_pairs(tc_work *work, const tc_cells *nodes, const tc_cells *links, pairs *out) {
     out->high = TB_TAKE(work->arena, uint32_t, links->n);
     out->start = TB_TAKE(work->arena, uint32_t, (size_t)links->n + 1);
-    out->begin = TB_FILL(work->arena, uint32_t, 2 * (size_t)links->n + 2, 0);
-    if (node == NULL || out->high == NULL || out->start == NULL || out->begin == NULL)
+    out->begin = TB_FILL(work->arena, uint32_t, (size_t)nodes->n + 2, 0);
+    if (out->high == NULL || out->start == NULL || out->begin == NULL)
         return false;
     out->slots = out->n = 0;
-    for (uint32_t i = 0; i < 2 * links->n; i++) {
-        if (work->node_mark[links->node[i]] == TC_NONE) {
-            work->node_mark[links->node[i]] = 0;
-            node[out->slots++] = links->node[i];
-        }
-    }
-    qsort(node, out->slots, sizeof *node, by_number);
-    for (uint32_t i = 0; i < out->slots; i++)
-        work->node_mark[node[i]] = i;
+    for (uint32_t i = 0; i < nodes->n; i++) /* the cells of one node are neighbours */
+        if (work->node_mark[nodes->node[i]] == TC_NONE)
+            work->node_mark[nodes->node[i]] = out->slots++;
     for (uint32_t i = 0; i < links->n; i++) {
-        const uint32_t *ends = &links->node[2 * i];
+        const uint32_t *ends = &links->node[2 * (size_t)i];
         if (i > 0 && ends[0] == ends[-2] && ends[1] == ends[-1])
             continue;
         out->high[out->n] = work->node_mark[ends[1]];
@@ -50,8 +36,8 @@ static bool list_pairs(tc_work *work, const tc_cells *links, pairs *out) {
     out->start[out->n] = links->n;
     for (uint32_t i = 0; i < out->slots; i++)
         out->begin[i + 1] += out->begin[i];
-    for (uint32_t i = 0; i < out->slots; i++)
-        work->node_mark[node[i]] = TC_NONE;
+    for (uint32_t i = 0; i < nodes->n; i++)
+        work->node_mark[nodes->node[i]] = TC_NONE;
     return true;
 }
 
@@ -157,7 +143,7 @@ thole_status tc_triangles(tc_work *work, tc_block *block) {
     search s = {.work = work, .block = block, .links = &block->cells[1]};
     thole_memory *memory = work->context->memory;
     uint32_t *mark = NULL;
-    bool fine = list_pairs(work, s.links, &s.pairs);
+    bool fine = list_pairs(work, &block->cells[0], s.links, &s.pairs);
     fine = fine && (mark = TB_FILL(work->arena, uint32_t, s.pairs.slots, 0)) != NULL;
     thole_status status = THOLE_OK;
     for (uint32_t u = 0; fine && u < s.pairs.slots; u++) {

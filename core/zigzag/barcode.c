@@ -1,6 +1,6 @@
 #include "zigzag/barcode.h"
 
-#include <stdlib.h>
+#include "base/sort.h"
 
 thole_barcode *tz_barcode_new(thole_memory *memory, const thole_clock *clock, thole_windows *windows,
                               const thole_zigzag_options *options) {
@@ -17,27 +17,33 @@ thole_barcode *tz_barcode_new(thole_memory *memory, const thole_clock *clock, th
     return barcode;
 }
 
-/* Kinds in the order of their names. */
-static int kind_place(uint8_t kind) {
-    static const int place[] = {[THOLE_CLOSED_OPEN] = 1, [THOLE_OPEN_CLOSED] = 2, [THOLE_CLOSED_CLOSED] = 0, [THOLE_OPEN_OPEN] = 3};
-    return place[kind];
-}
+/* A bar with its dimension and kind as one sortable number. */
+typedef struct keyed {
+    uint32_t first, last, dim, kind;
+} keyed;
 
-static int by_order(const void *x, const void *y) {
-    const thole_bar *a = x, *b = y;
-    if (a->dim != b->dim)
-        return a->dim < b->dim ? -1 : 1;
-    if (a->first != b->first)
-        return a->first < b->first ? -1 : 1;
-    if (a->last != b->last)
-        return a->last < b->last ? -1 : 1;
-    return kind_place(a->kind) - kind_place(b->kind);
-}
-
-void tz_barcode_sort(thole_barcode *barcode) {
-    if (barcode->bars.n > 0)
-        qsort(barcode->bars.at, barcode->bars.n, sizeof *barcode->bars.at, by_order);
+bool tz_barcode_sort(thole_barcode *barcode) {
+    /* Kinds in the order of their names. */
+    static const uint8_t place[] = {[THOLE_CLOSED_OPEN] = 1, [THOLE_OPEN_CLOSED] = 2, [THOLE_CLOSED_CLOSED] = 0, [THOLE_OPEN_OPEN] = 3};
+    static const uint8_t kind[] = {THOLE_CLOSED_CLOSED, THOLE_CLOSED_OPEN, THOLE_OPEN_CLOSED, THOLE_OPEN_OPEN};
+    size_t n = barcode->bars.n;
     TB_VEC_TRIM(barcode->memory, &barcode->bars);
+    if (n == 0)
+        return true;
+    keyed *list = tb_resize(barcode->memory, NULL, 0, 2 * n, sizeof *list);
+    if (list == NULL)
+        return false;
+    for (size_t i = 0; i < n; i++) {
+        thole_bar bar = barcode->bars.at[i];
+        list[i] = (keyed){bar.first, bar.last, bar.dim, place[bar.kind]};
+    }
+    static const size_t keys[] = {offsetof(keyed, kind), offsetof(keyed, last), offsetof(keyed, first), offsetof(keyed, dim)};
+    for (size_t k = 0; k < 4; k++)
+        tb_sort_by_u32(list, list + n, n, sizeof *list, keys[k]);
+    for (size_t i = 0; i < n; i++)
+        barcode->bars.at[i] = (thole_bar){list[i].first, list[i].last, (uint8_t)list[i].dim, kind[list[i].kind]};
+    tb_free(barcode->memory, list, 2 * n, sizeof *list);
+    return true;
 }
 
 thole_barcode *thole_barcode_retain(thole_barcode *barcode) {

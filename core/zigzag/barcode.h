@@ -19,7 +19,7 @@ struct thole_barcode {
 thole_barcode *tz_barcode_new(thole_memory *memory, const thole_clock *clock, thole_windows *windows,
                               const thole_zigzag_options *options);
 
-/* Put the bars in their order and give back slack. */
-void tz_barcode_sort(thole_barcode *barcode);
+/* Put the bars in their order and give back slack. False when memory is refused. */
+bool tz_barcode_sort(thole_barcode *barcode);
 
 #endif

@@ -26,7 +26,8 @@ typedef struct seam {
     tb_arena arena;
     const tz_span *a, *b;
     uint32_t n;        /* dimension of the shared space */
-    uint32_t *coord;   /* n: the coordinates that occur, ascending */
+    uint32_t *place;   /* coordinate -> its number among those that occur, below n, or TC_NONE */
+    size_t bound;      /* coordinates lie below this */
     uint32_t *a_order; /* left bars, low births first */
     uint32_t *b_order; /* right bars, low deaths first */
     matrix b_columns;  /* by place in b_order: columns with distinct highest coordinates */
@@ -95,34 +96,36 @@ static uint32_t *order_of(seam *s, const tz_end *end, tz_how low) {
     return order;
 }
 
-static int by_number(const void *a, const void *b) {
-    const uint32_t *x = a, *y = b;
-    return *x < *y ? -1 : *x > *y;
+/* Coordinates of an end lie below this. */
+static size_t bound_of(const tz_end *end) {
+    uint32_t most = 0;
+    for (size_t i = 0; i < end->item.n; i++)
+        most = end->item.at[i] > most ? end->item.at[i] : most;
+    return (size_t)most + 1;
 }
 
-/* The distinct coordinates of an end. */
-static bool list_coordinates(seam *s, const tz_end *end) {
-    size_t n = end->item.n, kept = 0;
-    uint32_t *all = TB_TAKE(&s->arena, uint32_t, n);
-    if (all == NULL)
+/* The distinct coordinates of an end, numbered in their order; `many` gets how many there are. */
+static bool number_coordinates(seam *s, const tz_end *end, uint32_t *many) {
+    s->bound = bound_of(end);
+    s->place = TB_FILL(&s->arena, uint32_t, s->bound, 0xFF);
+    if (s->place == NULL)
         return false;
-    if (n > 0)
-        memcpy(all, end->item.at, n * sizeof *all);
-    qsort(all, n, sizeof *all, by_number);
-    for (size_t i = 0; i < n; i++)
-        if (kept == 0 || all[kept - 1] != all[i])
-            all[kept++] = all[i];
-    s->coord = all;
-    return kept == s->n;
+    for (size_t i = 0; i < end->item.n; i++)
+        s->place[end->item.at[i]] = 0;
+    *many = 0;
+    for (size_t i = 0; i < s->bound; i++)
+        if (s->place[i] == 0)
+            s->place[i] = (*many)++;
+    return true;
 }
 
 /* Toggle an end's column into `set`, as places among the coordinates; false for a coordinate that is not there. */
 static bool add_end_column(seam *s, const tz_end *end, uint32_t bar, tz_bits *set) {
     for (size_t i = end->start.at[bar]; i < end->start.at[bar + 1]; i++) {
-        const uint32_t *at = bsearch(&end->item.at[i], s->coord, s->n, sizeof *at, by_number);
-        if (at == NULL)
+        uint32_t item = end->item.at[i];
+        if (item >= s->bound || s->place[item] == TC_NONE)
             return false;
-        tz_bits_toggle(set, (uint32_t)(at - s->coord));
+        tz_bits_toggle(set, s->place[item]);
     }
     return true;
 }
@@ -196,14 +199,6 @@ static bool sum_columns(seam *s, const tz_end *through, const uint32_t *order, c
             return false;
     }
     return true;
-}
-
-/* Coordinates of an end lie below this. */
-static size_t bound_of(const tz_end *end) {
-    uint32_t most = 0;
-    for (size_t i = 0; i < end->item.n; i++)
-        most = end->item.at[i] > most ? end->item.at[i] : most;
-    return (size_t)most + 1;
 }
 
 /* Column i of m, with the right bars' own makings spelled out, into `with`: places of reaching right bars. */
@@ -300,8 +295,11 @@ static thole_status glue_dimension(seam *s, int p, tz_span *out, thole_error *er
         !tz_bits_make(&s->arena, s->n, &s->work) || !tz_bits_make(&s->arena, s->n, &s->with) ||
         !tz_bits_make(&s->arena, s->n, &s->image))
         return tb_refused(s->memory, error, "gluing blocks of time");
-    if (!list_coordinates(s, &s->b->left))
-        return s->coord == NULL ? tb_refused(s->memory, error, "gluing blocks of time") : mismatch(error);
+    uint32_t many;
+    if (!number_coordinates(s, &s->b->left, &many))
+        return tb_refused(s->memory, error, "gluing blocks of time");
+    if (many != s->n)
+        return mismatch(error);
     thole_status status = triangular(s, error);
     if (status == THOLE_OK)
         status = match(s, error);

@@ -189,7 +189,8 @@ thole_status thole_zigzag(thole_context *context, const thole_network *network, 
         for (int d = 0; d <= x.top; d++)
             x.barcode->counts.cells[d] = x.chain.cells[d];
         x.barcode->counts.blocks = tc_blocks_count(&x.blocks);
-        tz_barcode_sort(x.barcode);
+        if (!tz_barcode_sort(x.barcode))
+            status = tb_refused(context->memory, error, "the bars");
     }
     run_clear(&x);
     if (x.barcode != NULL)
