@@ -5,7 +5,7 @@ struct tb_chunk {
     size_t bytes; /* this header included */
 };
 
-enum { CHUNK = 256 * 1024, ALIGN = 16 };
+enum { CHUNK = 256 * 1024, ALIGN = 16, MOST_KEPT = 64 * 1024 * 1024 };
 #define HEADER ((sizeof(tb_chunk) + ALIGN - 1) / ALIGN * ALIGN)
 
 void *tb_arena_take(tb_arena *arena, size_t n, size_t item) {
@@ -42,13 +42,17 @@ static void drop(tb_arena *arena, tb_chunk *until) {
 }
 
 void tb_arena_reset(tb_arena *arena) {
-    /* The oldest chunk is kept unless it is large: a big task should not
-     * hold its memory through a run of small ones. */
-    tb_chunk *oldest = arena->chunks;
-    while (oldest != NULL && oldest->older != NULL)
-        oldest = oldest->older;
-    drop(arena, oldest != NULL && oldest->bytes <= 16 * (size_t)CHUNK ? oldest : NULL);
+    /* One chunk as large as all of them serves the next task of the same size without going back to the
+     * system, which is what costs; a huge task does not hold its memory through small ones. */
+    size_t total = 0;
+    for (tb_chunk *chunk = arena->chunks; chunk != NULL; chunk = chunk->older)
+        total += chunk->bytes;
     arena->free_from = HEADER;
+    if (arena->chunks == NULL || (arena->chunks->older == NULL && total <= MOST_KEPT))
+        return;
+    drop(arena, NULL);
+    if (total <= MOST_KEPT && (arena->chunks = tb_resize(arena->memory, NULL, 0, total, 1)) != NULL)
+        *arena->chunks = (tb_chunk){.older = NULL, .bytes = total};
 }
 
 void tb_arena_clear(tb_arena *arena) { drop(arena, NULL); }

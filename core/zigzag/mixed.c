@@ -144,6 +144,13 @@ static bool write_bar(mixer *m, uint32_t s, uint32_t t) {
            (!right || write_class(m, m->back_killers, m->c.at, m->c.n, &m->sums, &span->right));
 }
 
+/* Keep the cycle in r and c under its pivot s, for t, and write the bar. */
+static bool claim_cycle(mixer *m, uint32_t s, uint32_t t) {
+    m->claim[s] = t;
+    return (m->r.n == 1 || tz_lists_add(&m->cycle, s, m->r.at, m->r.n)) &&
+           (m->c.n == 0 || tz_lists_add(&m->made_of, s, m->c.at, m->c.n)) && write_bar(m, s, t);
+}
+
 /* Reduce the cycle in rows, claim its pivot for t, and write the bar. */
 static bool mix_one(mixer *m, uint32_t t, bool at_edge, thole_status *status) {
     if (!reduce(m, at_edge))
@@ -154,11 +161,8 @@ static bool mix_one(mixer *m, uint32_t t, bool at_edge, thole_status *status) {
                              m->out->first / 2 + 1, (m->out->last + 1) / 2 + 1);
         return true;
     }
-    uint32_t s = m->r.at[0];
     DRAIN(m, &m->sums, &m->c);
-    m->claim[s] = t;
-    return (m->r.n == 1 || tz_lists_add(&m->cycle, s, m->r.at, m->r.n)) &&
-           (m->c.n == 0 || tz_lists_add(&m->made_of, s, m->c.at, m->c.n)) && write_bar(m, s, t);
+    return claim_cycle(m, m->r.at[0], t);
 }
 
 /* One back birth of dimension >= 2 that nothing kills. */
@@ -168,6 +172,24 @@ static bool mix_cell(mixer *m, uint32_t t, thole_status *status) {
     if (at_edge)
         tz_bits_toggle(&m->sums, t);
     return mix_one(m, t, at_edge, status);
+}
+
+/* Only an optimisation: whether the forest's cycle of n links, with this pivot, needs no column at all; m->r then
+ * holds its births and m->c is empty. */
+static bool cycle_is_reduced(mixer *m, size_t n, uint32_t pivot) {
+    const tz_rank *add = &m->addition->dim[1];
+    m->r.n = m->c.n = 0;
+    if (m->claim[pivot] != TC_NONE || !TB_VEC_RESERVE(m->work->context->memory, &m->r, n))
+        return false;
+    for (size_t i = 0; i < n; i++) {
+        uint32_t r = add->rank[m->path[i]];
+        if (add->victim[r] != TC_NONE)
+            continue;
+        if (add->killer[r] != TC_NONE)
+            return false;
+        m->r.at[m->r.n++] = r;
+    }
+    return true;
 }
 
 /* One link that closes a cycle in the back order. The cycle that the forest gives is already reduced by those
@@ -194,6 +216,8 @@ static bool mix_link(mixer *m, uint32_t t, thole_status *status) {
         }
         return write_bar(m, s, t);
     }
+    if (!at_edge && cycle_is_reduced(m, n, add->rank[pivot]))
+        return claim_cycle(m, add->rank[pivot], t);
     for (size_t i = 0; i < n; i++) {
         uint32_t r = add->rank[m->path[i]], c = back->rank[m->path[i]];
         if (add->victim[r] == TC_NONE)

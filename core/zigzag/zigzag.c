@@ -5,9 +5,9 @@
 #include "zigzag/barcode.h"
 #include "zigzag/decompose.h"
 
-/* Blocks decomposed before their values are glued and given back: enough to keep
- * all threads busy, few enough that the values waiting take little memory. */
-enum { BLOCKS_A_THREAD = 16 };
+/* A task is a group of blocks, decomposed and glued by one thread; a few tasks a thread wait to be glued to the
+ * chain at a time: enough to keep all threads busy, few enough that what waits takes little memory. */
+enum { GROUP = 8, GROUPS_A_THREAD = 8 };
 
 typedef struct worker {
     tb_arena arena;
@@ -23,9 +23,11 @@ typedef struct run {
     uint32_t wanted;
     worker *workers;
     int worker_count;
-    tz_value *batch;
-    size_t batch_size, batch_first;
-    tz_value chain; /* all blocks so far, its left end sealed */
+    size_t group;      /* blocks a task */
+    tz_value *batch;   /* one a task */
+    size_t batch_size; /* tasks at a time */
+    size_t batch_first; /* the first task's first block */
+    tz_value chain;    /* all blocks so far, its left end sealed */
     bool started;
     thole_barcode *barcode;
 } run;
@@ -58,7 +60,24 @@ static thole_status plan(run *x, thole_error *error) {
     return THOLE_OK;
 }
 
-static thole_status one_block(void *user, size_t task, int which, thole_error *error) {
+static thole_status one_block(run *x, worker *w, size_t k, tz_value *out, thole_error *error) {
+    tc_work making = {.context = x->context, .arena = &w->arena, .node_mark = w->node_mark, .error = error};
+    tz_work work = {.context = x->context, .arena = &w->arena, .error = error};
+    tc_block block;
+    thole_status status = tc_block_make(&making, &x->stays, &x->blocks, k, x->options, x->top, &block);
+    if (status == THOLE_OK) {
+        status = tz_decompose(&work, &block, x->dims, x->wanted, out);
+        if (status != THOLE_OK)
+            tz_value_clear(out);
+    }
+    if (status == THOLE_OK && k == 0)
+        for (int d = 0; d <= x->top; d++) /* what is there from the very start was in no block before */
+            out->cells[d] = block.cells[d].n;
+    tb_arena_reset(&w->arena);
+    return status;
+}
+
+static thole_status one_group(void *user, size_t task, int which, thole_error *error) {
     run *x = user;
     worker *w = &x->workers[which];
     w->arena.memory = x->context->memory;
@@ -68,17 +87,22 @@ static thole_status one_block(void *user, size_t task, int which, thole_error *e
             return tb_refused(x->context->memory, error, "the nodes of a block");
         memset(w->node_mark, 0xFF, (size_t)x->stays.nodes * sizeof *w->node_mark);
     }
-    tc_work making = {.context = x->context, .arena = &w->arena, .node_mark = w->node_mark, .error = error};
-    tz_work work = {.context = x->context, .arena = &w->arena, .error = error};
-    tc_block block;
-    thole_status status =
-        tc_block_make(&making, &x->stays, &x->blocks, x->batch_first + task, x->options, x->top, &block);
+    size_t first = x->batch_first + task * x->group, end = first + x->group, all = tc_blocks_count(&x->blocks);
+    tz_value sum;
+    thole_status status = one_block(x, w, first, &sum, error);
+    for (size_t k = first + 1; status == THOLE_OK && k < end && k < all; k++) {
+        tz_value next, glued;
+        status = one_block(x, w, k, &next, error);
+        if (status == THOLE_OK) {
+            status = tz_glue(x->context, &sum, &next, &glued, error);
+            tz_value_clear(&next);
+        }
+        tz_value_clear(&sum);
+        if (status == THOLE_OK)
+            sum = glued;
+    }
     if (status == THOLE_OK)
-        status = tz_decompose(&work, &block, x->dims, x->wanted, &x->batch[task]);
-    if (status == THOLE_OK && x->batch_first + task == 0)
-        for (int d = 0; d <= x->top; d++) /* cells there from the very start begin at no block's end */
-            x->batch[task].cells[d] = block.cells[d].n;
-    tb_arena_reset(&w->arena);
+        x->batch[task] = sum;
     return status;
 }
 
@@ -117,19 +141,22 @@ static thole_status glue_one(run *x, tz_value *value, thole_error *error) {
 }
 
 static thole_status all_blocks(run *x, thole_error *error) {
-    size_t n = tc_blocks_count(&x->blocks), most = (size_t)x->worker_count * BLOCKS_A_THREAD;
-    x->batch_size = n < most ? n : most;
-    x->workers = tb_new(x->context->memory, (size_t)x->worker_count, sizeof *x->workers);
+    size_t n = tc_blocks_count(&x->blocks), threads = (size_t)x->worker_count;
+    x->group = n / (threads * GROUPS_A_THREAD);
+    x->group = x->group < 1 ? 1 : x->group > GROUP ? GROUP : x->group;
+    x->batch_size = threads * GROUPS_A_THREAD;
+    size_t stride = x->group * x->batch_size;
+    x->workers = tb_new(x->context->memory, threads, sizeof *x->workers);
     x->batch = tb_new(x->context->memory, x->batch_size, sizeof *x->batch);
     if (x->workers == NULL || x->batch == NULL)
         return tb_refused(x->context->memory, error, "the blocks of time");
     thole_status status = THOLE_OK;
-    for (size_t k = 0; status == THOLE_OK && k < n; k += x->batch_size) {
-        size_t count = n - k < x->batch_size ? n - k : x->batch_size;
+    for (size_t k = 0; status == THOLE_OK && k < n; k += stride) {
+        size_t blocks = n - k < stride ? n - k : stride, tasks = (blocks + x->group - 1) / x->group;
         x->batch_first = k;
-        status = tb_parallel(x->context, count, one_block, x, "computing the zigzag", (double)k / (double)n,
-                             (double)(k + count) / (double)n, error);
-        for (size_t i = 0; status == THOLE_OK && i < count; i++)
+        status = tb_parallel(x->context, tasks, one_group, x, "computing the zigzag", (double)k / (double)n,
+                             (double)(k + blocks) / (double)n, error);
+        for (size_t i = 0; status == THOLE_OK && i < tasks; i++)
             status = glue_one(x, &x->batch[i], error);
     }
     if (status == THOLE_OK && !(tz_value_seal_right(&x->chain) && collect(x, &x->chain)))
