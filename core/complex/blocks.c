@@ -1,10 +1,17 @@
 #include "complex/blocks.h"
 
-/* New stays a block should bring at least, and how many times the inherited ones: measured on
- * timetable-like networks; flat around these values. */
-enum { LEAST_NEW = 3000, TIMES_INHERITED = 3 };
+/* New stays a block should bring at least, and how many times the inherited ones: measured on generated networks of
+ * each density; flat around these values. */
+typedef struct pace {
+    double most_density;
+    uint64_t least_new, times_inherited;
+} pace;
+static const pace paces[] = {{0.3, 3000, 3}, {2.5, 1000, 1}, {1e300, 0, 0}};
 
-static bool choose_cuts(const tc_stays *stays, thole_join join, tc_blocks *out) {
+static bool choose_cuts(const tc_stays *stays, thole_join join, double density, tc_blocks *out) {
+    const pace *p = paces;
+    while (density > p->most_density)
+        p++;
     uint32_t positions = stays->positions;
     uint32_t *begins = tb_new(stays->memory, (size_t)positions + 1, sizeof *begins);
     uint32_t *ends = tb_new(stays->memory, (size_t)positions + 1, sizeof *ends);
@@ -21,7 +28,7 @@ static bool choose_cuts(const tc_stays *stays, thole_join join, tc_blocks *out) 
         alive += begins[t];
         alive -= ends[t];
         fresh += begins[t];
-        if ((t & 1) == parity && fresh >= LEAST_NEW && fresh >= TIMES_INHERITED * inherited && t + 1 < positions) {
+        if ((t & 1) == parity && fresh >= p->least_new && fresh >= p->times_inherited * inherited && t + 1 < positions) {
             fine = TB_VEC_PUSH(out->memory, &out->cut, t);
             inherited = alive;
             fresh = 0;
@@ -75,12 +82,12 @@ static bool hand_out(const tc_stays *stays, tc_blocks *out) {
     return out->stay != NULL;
 }
 
-thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, tc_blocks *out,
+thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, double density, tc_blocks *out,
                           thole_error *error) {
     *out = (tc_blocks){.memory = stays->memory};
     bool fine = TB_VEC_PUSH(out->memory, &out->cut, 0);
     if (length == 0)
-        fine = fine && choose_cuts(stays, join, out);
+        fine = fine && choose_cuts(stays, join, density, out);
     else
         for (uint64_t t = length; fine && t + 1 < stays->positions; t += length)
             fine = TB_VEC_PUSH(out->memory, &out->cut, (uint32_t)t);

@@ -41,6 +41,9 @@ typedef struct tc_work {
 thole_status tc_block_make(tc_work *work, const tc_stays *stays, const tc_blocks *blocks, size_t k,
                            const thole_zigzag_options *options, int top, tc_block *out);
 
+/* Cells of dimension 2 and up for each link, at a few positions: 0 where top < 2. What it makes is given back. */
+thole_status tc_density(tc_work *work, const tc_stays *stays, const thole_zigzag_options *options, int top, double *out);
+
 /* ---- steps, shared by the files of this room ----------------------------- */
 
 /* Links of a block: stays cut to it, positions counted from its first, by (u, v, first). */

@@ -77,19 +77,41 @@ static thole_status one_block(run *x, worker *w, size_t k, tz_value *out, thole_
     return status;
 }
 
+/* A worker's scratch, made when it is first used. */
+static thole_status ready(run *x, worker *w, thole_error *error) {
+    w->arena.memory = x->context->memory;
+    if (w->node_mark != NULL || x->stays.nodes == 0)
+        return THOLE_OK;
+    w->node_mark = tb_resize(x->context->memory, NULL, 0, x->stays.nodes, sizeof *w->node_mark);
+    if (w->node_mark == NULL)
+        return tb_refused(x->context->memory, error, "the nodes of a block");
+    memset(w->node_mark, 0xFF, (size_t)x->stays.nodes * sizeof *w->node_mark);
+    return THOLE_OK;
+}
+
+static thole_status cut_blocks(run *x, thole_error *error) {
+    double density = 0;
+    x->workers = tb_new(x->context->memory, (size_t)x->worker_count, sizeof *x->workers);
+    if (x->workers == NULL)
+        return tb_refused(x->context->memory, error, "the blocks of time");
+    thole_status status = ready(x, &x->workers[0], error);
+    tc_work making = {.context = x->context, .arena = &x->workers[0].arena, .node_mark = x->workers[0].node_mark, .error = error};
+    if (status == THOLE_OK && x->options->block == 0)
+        status = tc_density(&making, &x->stays, x->options, x->top, &density);
+    if (status == THOLE_OK)
+        status = tc_blocks_of(&x->stays, x->options->join, x->options->block, density, &x->blocks, error);
+    return status;
+}
+
 static thole_status one_group(void *user, size_t task, int which, thole_error *error) {
     run *x = user;
     worker *w = &x->workers[which];
-    w->arena.memory = x->context->memory;
-    if (w->node_mark == NULL && x->stays.nodes > 0) {
-        w->node_mark = tb_resize(x->context->memory, NULL, 0, x->stays.nodes, sizeof *w->node_mark);
-        if (w->node_mark == NULL)
-            return tb_refused(x->context->memory, error, "the nodes of a block");
-        memset(w->node_mark, 0xFF, (size_t)x->stays.nodes * sizeof *w->node_mark);
-    }
+    thole_status status = ready(x, w, error);
+    if (status != THOLE_OK)
+        return status;
     size_t first = x->batch_first + task * x->group, end = first + x->group, all = tc_blocks_count(&x->blocks);
     tz_value sum;
-    thole_status status = one_block(x, w, first, &sum, error);
+    status = one_block(x, w, first, &sum, error);
     for (size_t k = first + 1; status == THOLE_OK && k < end && k < all; k++) {
         tz_value next, glued;
         status = one_block(x, w, k, &next, error);
@@ -146,9 +168,8 @@ static thole_status all_blocks(run *x, thole_error *error) {
     x->group = x->group < 1 ? 1 : x->group > GROUP ? GROUP : x->group;
     x->batch_size = threads * GROUPS_A_THREAD;
     size_t stride = x->group * x->batch_size;
-    x->workers = tb_new(x->context->memory, threads, sizeof *x->workers);
     x->batch = tb_new(x->context->memory, x->batch_size, sizeof *x->batch);
-    if (x->workers == NULL || x->batch == NULL)
+    if (x->batch == NULL)
         return tb_refused(x->context->memory, error, "the blocks of time");
     thole_status status = THOLE_OK;
     for (size_t k = 0; status == THOLE_OK && k < n; k += stride) {
@@ -209,7 +230,7 @@ thole_status thole_zigzag(thole_context *context, const thole_network *network, 
     if (status == THOLE_OK)
         status = tc_stays_of(context, network, windows, options->join, options->all_nodes, &x.stays, error);
     if (status == THOLE_OK)
-        status = tc_blocks_of(&x.stays, options->join, options->block, &x.blocks, error);
+        status = cut_blocks(&x, error);
     if (status == THOLE_OK)
         status = all_blocks(&x, error);
     if (status == THOLE_OK) {
