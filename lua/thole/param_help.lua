@@ -111,4 +111,22 @@ local function help_text(run, params, order)
     return table.concat(lines, "\n")
 end
 
-return { show = show, show_range = show_range, example = example, example_line = example_line, text = help_text }
+-- The comment that a recipe begins with, without its dashes.
+local function description(path)
+    local lines = {}
+    local file = io.open(path, "r")
+    if file then
+        for line in file:lines() do
+            local text = line:match("^%-%-%-?%s?(.*)$")
+            if text then
+                lines[#lines + 1] = text
+            elseif not line:find("^#!") then
+                break
+            end
+        end
+        file:close()
+    end
+    return table.concat(lines, "\n")
+end
+
+return { description = description, show = show, show_range = show_range, example = example, example_line = example_line, text = help_text }

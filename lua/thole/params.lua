@@ -254,22 +254,9 @@ end
 local function stock_run()
     local words = type(arg) == "table" and arg or {}
     local recipe = type(words[0]) == "string" and words[0] or "recipe"
-    local description = {}
-    local file = io.open(recipe, "r")
-    if file then
-        for line in file:lines() do
-            local text = line:match("^%-%-%-?%s?(.*)$")
-            if text then
-                description[#description + 1] = text
-            elseif not line:find("^#!") then
-                break
-            end
-        end
-        file:close()
-    end
     return {
         words = words, recipe = recipe, command = "lua5.4 " .. recipe,
-        description = table.concat(description, "\n"),
+        description = help.description(recipe),
         finish = function() os.exit(0, true) end,
     }
 end
