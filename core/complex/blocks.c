@@ -4,9 +4,10 @@
  * each density; flat around these values. */
 typedef struct pace {
     double most_density;
-    uint64_t least_new, times_inherited;
+    uint64_t least_new;
+    double times_inherited;
 } pace;
-static const pace paces[] = {{0.3, 3000, 3}, {2.5, 1000, 1}, {1e300, 0, 0}};
+static const pace paces[] = {{0.3, 3000, 3}, {1.0, 1000, 1}, {1e300, 1, 0.2}};
 
 static bool choose_cuts(const tc_stays *stays, thole_join join, double density, tc_blocks *out) {
     const pace *p = paces;
@@ -28,7 +29,7 @@ static bool choose_cuts(const tc_stays *stays, thole_join join, double density, 
         alive += begins[t];
         alive -= ends[t];
         fresh += begins[t];
-        if ((t & 1) == parity && fresh >= p->least_new && fresh >= p->times_inherited * inherited && t + 1 < positions) {
+        if ((t & 1) == parity && fresh >= p->least_new && (double)fresh >= p->times_inherited * (double)inherited && t + 1 < positions) {
             fine = TB_VEC_PUSH(out->memory, &out->cut, t);
             inherited = alive;
             fresh = 0;
