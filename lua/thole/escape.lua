@@ -29,7 +29,8 @@ local ENTITY = { ["&"] = "&amp;", ["<"] = "&lt;", [">"] = "&gt;", ['"'] = "&quot
 -- For the text and the attribute values of XML and HTML alike.
 function escape.xml(text)
     text = escape.utf8(tostring(text))
-    text = text:gsub("[%z\1-\8\11\12\14-\31]", REPLACEMENT):gsub("\u{FFFE}", REPLACEMENT):gsub("\u{FFFF}", REPLACEMENT)
+    text = text:gsub("[%z\1-\8\11\12\14-\31]", REPLACEMENT)
+    text = text:gsub("\u{FFFE}", REPLACEMENT):gsub("\u{FFFF}", REPLACEMENT)
     return (text:gsub("[&<>\"']", ENTITY))
 end
 

@@ -8,8 +8,8 @@ local escape = require "thole.escape"
 
 local moments = {}
 
-local MONTHS = { "January", "February", "March", "April", "May", "June", "July", "August", "September", "October",
-        "November", "December" }
+local MONTHS = { "January", "February", "March", "April", "May", "June", "July", "August", "September",
+        "October", "November", "December" }
 local DAYS = { "Monday", "Tuesday", "Wednesday", "Thursday", "Friday", "Saturday", "Sunday" }
 
 -- Days since 1970-01-01 of a date of the proleptic Gregorian calendar, and back. Years are counted
@@ -104,7 +104,9 @@ function moments.duration(seconds, unit)
     local whole = math.tointeger(math.floor(seconds))
     for _, step in ipairs { { 86400, "d" }, { 3600, "h" }, { 60, "min" } } do
         -- People count the hours of a week, not its days: "65 h 30 min" rather than "2 d 17 h 30 min".
-        if whole >= (step[2] == "d" and 10 * 86400 or step[1]) then parts[#parts + 1] = ("%d %s"):format(whole // step[1], step[2]) end
+        if whole >= (step[2] == "d" and 10 * 86400 or step[1]) then
+            parts[#parts + 1] = ("%d %s"):format(whole // step[1], step[2])
+        end
         if #parts > 0 then whole = whole % step[1] end
     end
     local rest = whole + (seconds - math.floor(seconds))

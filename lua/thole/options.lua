@@ -18,10 +18,12 @@ function options.check(opts, known, where, level)
             local names = {}
             for name in pairs(known) do names[#names + 1] = name end
             table.sort(names)
-            error(('%s has no option "%s": %s'):format(where, tostring(key), nearest.hint(tostring(key), names)), level)
+            error(('%s has no option "%s": %s'):format(where, tostring(key),
+                    nearest.hint(tostring(key), names)), level)
         end
         if type(value) ~= known[key] then
-            error(('option "%s" of %s must be a %s, not a %s'):format(key, where, known[key], type(value)), level)
+            error(('option "%s" of %s must be a %s, not a %s'):format(key, where, known[key], type(value)),
+                    level)
         end
     end
     return opts

@@ -69,7 +69,8 @@ function svg.document(drawn, width)
         "<title>", escape.xml(drawn.title), "</title>\n<style>\n", svg.style(), "</style>\n",
         '<rect class="paper" width="100%" height="100%"/>\n',
         ('<text class="head" x="%d" y="24">%s</text>\n'):format(left, escape.xml(drawn.title)),
-        ('<svg x="%d" y="%d" width="%d" height="%d" overflow="visible">\n'):format(left, top, width - left - right,
+        ('<svg x="%d" y="%d" width="%d" height="%d" overflow="visible">\n'):format(left, top,
+                width - left - right,
                 drawn.height),
         drawn.body, "</svg>\n</svg>\n",
     }
@@ -81,7 +82,8 @@ function svg.inline(drawn)
     return table.concat {
         ('<div class="chart" style="padding:0 0 %dpx %dpx">\n'):format(drawn.below or 0, drawn.left or 0),
         ('<svg role="img" %s aria-label="%s">\n'):format(
-            drawn.square and 'class="square"' or ('width="100%%" height="%d"'):format(drawn.height), escape.xml(drawn.title)),
+            drawn.square and 'class="square"' or ('width="100%%" height="%d"'):format(drawn.height),
+                    escape.xml(drawn.title)),
         drawn.body, "</svg>\n</div>\n",
     }
 end

@@ -59,7 +59,9 @@ function axis.over(windows, zone, unit)
     self.ticks = self.calendar and self:calendar_ticks() or self:plain_ticks()
     local boundaries = 0 -- labelled ones inside the picture; fewer than two do not make a scale
     for _, tick in ipairs(self.ticks) do
-        if tick.strong and tick.upper and tick.at > self.low and tick.at < self.high then boundaries = boundaries + 1 end
+        if tick.strong and tick.upper and tick.at > self.low and tick.at < self.high then
+            boundaries = boundaries + 1
+        end
     end
     self.has_boundaries = boundaries >= 2
     return self
@@ -89,7 +91,8 @@ function axis:plain_ticks()
     end
     local ticks = {}
     for i = math.ceil(self.low / step), math.floor(self.high / step) do
-        ticks[#ticks + 1] = { at = i * step, upper = escape.number(tonumber(("%.12g"):format(i * step))), strong = true }
+        ticks[#ticks + 1] = { at = i * step, upper = escape.number(tonumber(("%.12g"):format(i * step))),
+                strong = true }
     end
     return ticks
 end
@@ -128,7 +131,9 @@ function axis:calendar_ticks()
             tick.upper, tick.lower = weekday, ("%d %s"):format(date, month_name)
         elseif days <= 62 then
             tick.strong = weekday == "Mon"
-            if tick.strong then tick.upper, tick.lower = ("%d %s"):format(date, month_name), ("%d"):format(year) end
+            if tick.strong then
+                tick.upper, tick.lower = ("%d %s"):format(date, month_name), ("%d"):format(year)
+            end
         elseif days <= 1100 then
             tick = date == 1 and tick or nil
             if tick and (days <= 400 or month % 6 == 1) then
@@ -169,7 +174,8 @@ function axis:lines(top, bottom)
         local at = self:place(tick.at)
         if at >= 0 and at <= 1 then
             local x = svg.percent(at)
-            out[#out + 1] = ('<line class="%s" x1="%s" x2="%s" y1="%s" y2="%s"/>\n'):format(tick.strong and "rule" or "faint",
+            out[#out + 1] = ('<line class="%s" x1="%s" x2="%s" y1="%s" y2="%s"/>\n'):format(tick.strong
+                    and "rule" or "faint",
                     x, x, top, bottom)
         end
     end
@@ -201,7 +207,8 @@ end
 function axis:labels(sparse)
     local out = {}
     local function text(class, x, y, words)
-        out[#out + 1] = ('<text class="%s" x="%s" y="%d" dx="3">%s</text>\n'):format(class, x, y, escape.xml(words))
+        out[#out + 1] = ('<text class="%s" x="%s" y="%d" dx="3">%s</text>\n'):format(class, x, y,
+                escape.xml(words))
     end
     for _, item in ipairs(labelled(self)) do
         local tick, x = item[1], svg.percent(item[2])

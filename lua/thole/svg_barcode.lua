@@ -54,7 +54,8 @@ local function gather(barcode, dim, scale)
 end
 
 local function describe(bar, dim, scale)
-    return ("%s from %s to %s, windows %s to %s, lasts %s, %s"):format((words.of(dim)), moments.name(bar.opens),
+    return ("%s from %s to %s, windows %s to %s, lasts %s, %s"):format((words.of(dim)),
+            moments.name(bar.opens),
         moments.name(bar.closes), escape.number(bar.first), escape.number(bar.last),
         moments.duration(bar.lifespan, not scale.calendar and (scale.unit or "") or nil), bar.kind)
 end
@@ -99,13 +100,15 @@ local function panel(barcode, dim, scale, id, top)
     local _, many = words.of(dim)
     local out = {}
     out[#out + 1] = ('<text class="head" x="0" y="%d">%s</text>\n'):format(top + 17,
-        escape.xml(("%s (dimension %d): %s %s"):format(many:sub(1, 1):upper() .. many:sub(2), dim, escape.count(#bars),
+        escape.xml(("%s (dimension %d): %s %s"):format(many:sub(1, 1):upper() .. many:sub(2), dim,
+                escape.count(#bars),
                 #bars == 1 and "bar" or "bars")))
     out[#out + 1] = ('<g id="%s" class="%s" stroke-width="%s">\n'):format(id, svg.hue(dim),
             svg.decimal(math.max(1.5, pitch * 0.3)))
     out[#out + 1] = shapes(id, pitch)
     for _, kind in ipairs(KINDS) do
-        out[#out + 1] = ('<g marker-start="url(#%s-%s)" marker-end="url(#%s-%s)">\n'):format(id, kind[2], id, kind[3])
+        out[#out + 1] = ('<g marker-start="url(#%s-%s)" marker-end="url(#%s-%s)">\n'):format(id, kind[2], id,
+                kind[3])
         for _, bar in ipairs(bars) do
             if bar.kind == kind[1] then
                 out[#out + 1] = bar_line(bar, top + height - 6 - (bar.row - 0.5) * pitch,
@@ -142,7 +145,8 @@ function chart.draw(barcode, opts)
         lines[#lines + 1] = ('<line class="frame" x1="0" x2="100%%" y1="%d" y2="%d"/>\n'):format(y, y)
     end
     return { height = top, title = opts.title or "Barcode, " .. scale:caption(), caption = scale:caption(),
-            body = scale:labels() .. scale:lines(axis.height, top) .. table.concat(lines) .. table.concat(panels) }
+            body = scale:labels() .. scale:lines(axis.height, top) .. table.concat(lines)
+                    .. table.concat(panels) }
 end
 
 return chart

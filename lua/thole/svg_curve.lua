@@ -23,7 +23,8 @@ local function grid(most, top)
     for value = 0, most, step do
         local y = svg.decimal(top + BODY * (1 - value / most), 1)
         out[#out + 1] = ('<line class="faint" x1="0" x2="100%%" y1="%s" y2="%s"/>\n'):format(y, y)
-        out[#out + 1] = ('<text class="soft" x="-6" y="%s" dy="4" text-anchor="end">%s</text>\n'):format(y, escape.count(value))
+        out[#out + 1] = ('<text class="soft" x="-6" y="%s" dy="4" text-anchor="end">%s</text>\n'):format(y,
+                escape.count(value))
     end
     return table.concat(out)
 end
@@ -40,7 +41,8 @@ local function columns(numbers, shares, scale, most, top)
         if value > 0 and right > left then
             local height = BODY * value / most
             out[#out + 1] = ('<rect class="step" x="%s" y="%s" width="%s" height="%s"/>\n'):format(scale:x(left),
-                svg.decimal(top + BODY - height, 1), svg.percent(scale:place(right) - scale:place(left)), svg.decimal(height, 1))
+                svg.decimal(top + BODY - height, 1), svg.percent(scale:place(right) - scale:place(left)),
+                        svg.decimal(height, 1))
         end
         i = i + 1
     end
@@ -59,12 +61,15 @@ function chart.draw(series, opts)
         local most = 1
         for _, value in ipairs(numbers) do most = math.max(most, value) end
         out[#out + 1] = ('<line class="frame" x1="0" x2="100%%" y1="%d" y2="%d"/>\n'):format(top, top)
-        out[#out + 1] = ('<text class="head" x="0" y="%d">%s</text>\n'):format(top + 17, escape.xml(curve.label))
+        out[#out + 1] = ('<text class="head" x="0" y="%d">%s</text>\n'):format(top + 17,
+                escape.xml(curve.label))
         out[#out + 1] = grid(most, top + HEAD)
-        out[#out + 1] = ('<g class="%s">\n%s</g>\n'):format(svg.hue(curve.dim), columns(numbers, shares, scale, most, top + HEAD))
+        out[#out + 1] = ('<g class="%s">\n%s</g>\n'):format(svg.hue(curve.dim),
+                columns(numbers, shares, scale, most, top + HEAD))
         top = top + HEAD + BODY + 14
     end
-    return { height = top, left = 40, caption = scale:caption(), title = opts.title or "Betti numbers, " .. scale:caption(),
+    return { height = top, left = 40, caption = scale:caption(), title = opts.title or "Betti numbers, "
+            .. scale:caption(),
             body = scale:labels() .. scale:lines(axis.height, top) .. table.concat(out) }
 end
 

@@ -13,13 +13,29 @@ local chart = {}
 chart.legend = "Square: both ends closed. Ring: both ends open. Triangle pointing right: closed, then open. " ..
         "Triangle pointing left: open, then closed. A larger mark stands for several bars: 2 to 4, 5 or more."
 
--- Kinds in the order drawn, with the shape of a mark of size r around 0, 0.
+local function square(r)
+    return ("M-%d-%dh%dv%dh-%dz"):format(r, r, 2 * r, 2 * r, 2 * r)
+end
+
+local function ring(r)
+    return ("M-%d 0a%d %d 0 1 0 %d 0a%d %d 0 1 0-%d 0z"):format(r, r, r, 2 * r, r, r, 2 * r)
+end
+
+-- Triangles lean over their centre a little, so that they look as large as the squares.
+local function pointing_right(r)
+    return ("M-%d-%dl%d %dl-%d %dz"):format(r, r + 1, 2 * r, r + 1, 2 * r, r + 1)
+end
+
+local function pointing_left(r)
+    return ("M%d-%dl-%d %dl%d %dz"):format(r, r + 1, 2 * r, r + 1, 2 * r, r + 1)
+end
+
+-- Kinds in the order drawn, each with the shape of a mark of half width r around 0, 0.
 local KINDS = {
-    { "closed-closed", function(r) return ("M-%s-%sh%sv%sh-%sz"):format(r, r, 2 * r, 2 * r, 2 * r) end, "solid" },
-    { "closed-open", function(r) return ("M-%s-%sl%s %sl-%s %sz"):format(r, r + 1, 2 * r, r + 1, 2 * r, r + 1) end, "solid" },
-    { "open-closed", function(r) return ("M%s-%sl-%s %sl%s %sz"):format(r, r + 1, 2 * r, r + 1, 2 * r, r + 1) end, "solid" },
-    { "open-open", function(r) return ("M-%s 0a%s %s 0 1 0 %s 0a%s %s 0 1 0-%s 0z"):format(r, r, r, 2 * r, r, r, 2 * r) end,
-        "hollow" },
+    { "closed-closed", square, "solid" },
+    { "closed-open", pointing_right, "solid" },
+    { "open-closed", pointing_left, "solid" },
+    { "open-open", ring, "hollow" },
 }
 local SIZES = { 3, 5, 7 } -- half widths for 1, 2 to 4, 5 or more bars
 
@@ -36,7 +52,8 @@ local function gather(barcode, dim)
         if mark then
             mark.count = mark.count + 1
         else
-            mark = { count = 1, birth = bar.birth, death = bar.death, kind = bar.kind, lifespan = bar.lifespan }
+            mark = { count = 1, birth = bar.birth, death = bar.death, kind = bar.kind,
+                    lifespan = bar.lifespan }
             at[key] = mark
             marks[#marks + 1] = mark
         end
@@ -98,12 +115,15 @@ function chart.draw(barcode, opts)
     out[#out + 1] = "</g>\n"
     local _, many = words.of(dim)
     local body = table.concat {
-        upward(scale), '<svg y="100%" overflow="visible" width="100%" height="1">\n', scale:labels(true), "</svg>\n",
+        upward(scale), '<svg y="100%" overflow="visible" width="100%" height="1">\n', scale:labels(true),
+                "</svg>\n",
         scale:lines("0", "100%"),
         '<line class="diagonal" x1="0" y1="100%" x2="100%" y2="0"/>\n',
         '<rect class="frame" width="100%" height="100%"/>\n', table.concat(out) }
-    return { body = body, caption = scale:caption(), height = 640, square = true, left = 40, below = axis.height, dim = dim,
-            bars = total, title = opts.title or ("Persistence diagram of %s (dimension %d), %s"):format(many, dim,
+    return { body = body, caption = scale:caption(), height = 640, square = true, left = 40,
+            below = axis.height, dim = dim,
+            bars = total, title = opts.title or ("Persistence diagram of %s (dimension %d), %s"):format(many,
+                    dim,
             scale:caption()) }
 end
 

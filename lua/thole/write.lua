@@ -9,7 +9,8 @@ local rows = require "thole.write_rows"
 -- Charts by opts.view. Each takes the barcode and the options and returns a drawing.
 local VIEWS = {
     barcode = function(barcode, opts)
-        return require("thole.svg_barcode").draw(barcode, { dims = opts.dim and { opts.dim } or opts.dims, title = opts.title })
+        return require("thole.svg_barcode").draw(barcode,
+                { dims = opts.dim and { opts.dim } or opts.dims, title = opts.title })
     end,
     diagram = function(barcode, opts)
         return require("thole.svg_diagram").draw(barcode, { dim = opts.dim, title = opts.title })
@@ -18,10 +19,13 @@ local VIEWS = {
 
 local function write_svg(thing, out, opts)
     if rows.kind(thing) ~= "barcode" then
-        error("an SVG file shows a barcode: give the result of net:zigzag, or write this as .csv or .jsonl", 0)
+        error("an SVG file shows a barcode: give the result of net:zigzag, or write this as .csv or .jsonl",
+                0)
     end
     local view = opts.view or "barcode"
-    if not VIEWS[view] then error(('unknown view "%s": use "barcode" or "diagram"'):format(tostring(view)), 0) end
+    if not VIEWS[view] then
+        error(('unknown view "%s": use "barcode" or "diagram"'):format(tostring(view)), 0)
+    end
     local drawn = VIEWS[view](thing, opts)
     local width = drawn.square and drawn.height + drawn.left + 16 or opts.width or 1200
     out:write(require("thole.svg").document(drawn, width))
@@ -34,7 +38,8 @@ local FORMATS = {
     svg = write_svg,
 }
 
-local KNOWN = { format = "function", view = "string", dim = "number", dims = "table", title = "string", width = "number" }
+local KNOWN = { format = "function", view = "string", dim = "number", dims = "table", title = "string",
+        width = "number" }
 
 local function format_for(path, thing, opts)
     if opts.format then return opts.format end

@@ -73,7 +73,8 @@ function rows.kind(thing)
     local name = type(meta) == "table" and meta.__name or ""
     local own = name:match("^thole%.(%a+)")
     if own and MAKERS[own] then return own end
-    if type(thing) == "table" and type(thing.columns) == "table" and type(thing.rows) == "table" then return "table" end
+    if type(thing) ~= "table" then return nil end
+    if type(thing.columns) == "table" and type(thing.rows) == "table" then return "table" end
     return nil
 end
 

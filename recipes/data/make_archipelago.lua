@@ -98,7 +98,8 @@ end
 -- every: minutes between runs; offset: minutes after the first hour; both: also the other way.
 local buses = {
     { line = "B1", every = 20, offset = 0, seats = 32, dwell = 1,
-        stops = { "Brindle Quay", "Customs Steps", "Saltmarket", "Fennel Bridge", "Glasshouse Cross", "Brindle Quay" },
+        stops = { "Brindle Quay", "Customs Steps", "Saltmarket", "Fennel Bridge", "Glasshouse Cross",
+                "Brindle Quay" },
         minutes = { 4, 5, 7, 6, 5 } },
     { line = "B2", every = 30, offset = 10, seats = 44, dwell = 1, both = true,
         stops = { "Saltmarket", "Hill Chapel", "North Strand", "Copperbight" }, minutes = { 9, 12, 14 } },
@@ -130,7 +131,8 @@ local function bus_day(day)
         local there, back = bus.stops, reversed(bus.stops)
         for at = base + first + bus.offset, base + last, every do
             local arrived = run(there, bus.minutes, bus.dwell, at, "bus", bus.line, bus.seats)
-            if bus.both then run(back, reversed(bus.minutes), bus.dwell, arrived + 4, "bus", bus.line, bus.seats) end
+            if bus.both then run(back, reversed(bus.minutes), bus.dwell, arrived + 4, "bus", bus.line,
+                    bus.seats) end
         end
     end
 end
@@ -151,10 +153,12 @@ end
 local sailings = {
     { line = "F1", mode = "ferry", seats = 180, dwell = 10, half = true,
         stops = { "Brindle Quay", "Tolmar Haven", "Quill Pier", "Brindle Quay" }, minutes = { 45, 40, 50 },
-        at = "06:00 07:20 08:40 10:00 11:20 12:40 14:00 15:20 16:40 18:00 19:20", thin = "09:00 12:20 15:40 18:00" },
+        at = "06:00 07:20 08:40 10:00 11:20 12:40 14:00 15:20 16:40 18:00 19:20",
+                thin = "09:00 12:20 15:40 18:00" },
     { line = "F2", mode = "ferry", seats = 180, dwell = 10, half = true,
         stops = { "Brindle Quay", "Quill Pier", "Tolmar Haven", "Brindle Quay" }, minutes = { 50, 40, 45 },
-        at = "06:40 08:00 09:20 10:40 12:00 13:20 14:40 16:00 17:20 18:40 20:00", thin = "10:20 13:40 17:00" },
+        at = "06:40 08:00 09:20 10:40 12:00 13:20 14:40 16:00 17:20 18:40 20:00",
+                thin = "10:20 13:40 17:00" },
     { line = "F3", mode = "ferry", seats = 90, dwell = 15, half = true,
         stops = { "Copperbight", "Long Jetty", "Copperbight" }, minutes = { 40, 40 },
         at = "06:20 08:10 10:00 11:50 13:40 15:30 17:20 19:10", thin = "09:30 13:10 16:50" },
@@ -170,7 +174,8 @@ local sailings = {
         at = "06:50 08:50 10:50 12:50 14:50 16:50 18:50", thin = "10:50 15:50" },
     { line = "L2", mode = "launch", seats = 24, dwell = 5, outer = true,
         stops = { "Ombrey Stair", "Hollow Light", "Petrel Slip", "Hollow Light", "Ombrey Stair" },
-        minutes = { 28, 30, 30, 28 }, at = "07:30 10:30 13:30 16:30", market = "07:30 09:30 11:30 13:30 15:30 17:30",
+        minutes = { 28, 30, 30, 28 }, at = "07:30 10:30 13:30 16:30",
+                market = "07:30 09:30 11:30 13:30 15:30 17:30",
         thin = "12:00" },
     { line = "L3", mode = "launch", seats = 24, dwell = 10, outer = true,
         stops = { "Sorrel Landing", "Petrel Slip", "Sorrel Landing" }, minutes = { 38, 38 },
@@ -186,10 +191,12 @@ local function sailing_day(day)
             count = count + 1
             local stays = kind == "storm" and (boat.outer or boat.half and count % 2 == 0)
             local at = base + tonumber(hour) * 60 + tonumber(minute)
-            if not stays then run(boat.stops, boat.minutes, boat.dwell, at, boat.mode, boat.line, boat.seats, bookings) end
+            if not stays then run(boat.stops, boat.minutes, boat.dwell, at, boat.mode, boat.line, boat.seats,
+                    bookings) end
             -- Friday afternoon is too full for one boat: a second sails beside it on the first leg.
             if day == FRIDAY and boat.line == "F1" and at - base >= 14 * 60 and at - base < 18 * 60 then
-                leg(boat.stops[1], boat.stops[2], at, boat.minutes[1], boat.mode, "F1 relief", 110, bookings(110, at))
+                leg(boat.stops[1], boat.stops[2], at, boat.minutes[1], boat.mode, "F1 relief", 110,
+                        bookings(110, at))
             end
         end
     end
@@ -223,7 +230,8 @@ end
 
 local lines = { "from,to,departs,arrives,mode,line,seats,booked" }
 for _, row in ipairs(rows) do
-    lines[#lines + 1] = ("%s,%s,%s,%s,%s,%s,%d,%s"):format(row.from, row.to, iso(row.departs), iso(row.arrives),
+    lines[#lines + 1] = ("%s,%s,%s,%s,%s,%s,%d,%s"):format(row.from, row.to, iso(row.departs),
+            iso(row.arrives),
             row.mode, row.line, row.seats, row.booked)
 end
 write("archipelago-week.csv", lines)

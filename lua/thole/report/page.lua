@@ -33,12 +33,13 @@ function page.facts(list)
     return table.concat(out) .. "</dl>\n"
 end
 
--- A table below the words that explain it. columns: list of { label, number = true, whole = true: a line of its own on a phone }; the
--- first column heads its row. rows: lists of HTML.
+-- A table below the words that explain it. columns: list of { label, number = true, whole = true: a line of
+-- its own on a phone }; the first column heads its row. rows: lists of HTML.
 function page.table(words, columns, rows)
     local out = { '<p class="note">', escape.xml(words), '</p>\n<table class="stack">\n<thead><tr>' }
     for _, column in ipairs(columns) do
-        out[#out + 1] = ('<th scope="col"%s>%s</th>'):format(column.number and ' class="number"' or "", escape.xml(column[1]))
+        out[#out + 1] = ('<th scope="col"%s>%s</th>'):format(column.number and ' class="number"' or "",
+                escape.xml(column[1]))
     end
     out[#out + 1] = "</tr></thead>\n<tbody>\n"
     for _, row in ipairs(rows) do
@@ -65,7 +66,8 @@ function page.document(title, lead, sections, footer)
         '<meta name="color-scheme" content="light dark">\n',
         -- Nothing is fetched and nothing runs, whatever the data hold.
         '<meta http-equiv="Content-Security-Policy" content="default-src \'none\'; style-src \'unsafe-inline\'">\n',
-        "<title>", escape.xml(title), "</title>\n<style>\n", require("thole.report.style")(), "</style>\n</head>\n<body>\n",
+        "<title>", escape.xml(title), "</title>\n<style>\n", require("thole.report.style")(),
+                "</style>\n</head>\n<body>\n",
         "<header>\n<h1>", escape.xml(title), "</h1>\n",
         lead and ('<p class="lead">%s</p>\n'):format(escape.xml(lead)) or "",
         '<nav aria-label="Contents"><ul>\n',
@@ -74,7 +76,9 @@ function page.document(title, lead, sections, footer)
         out[#out + 1] = ('<li><a href="#%s">%s</a></li>\n'):format(section.id, escape.xml(section.title))
     end
     out[#out + 1] = "</ul></nav>\n</header>\n<main>\n"
-    for _, section in ipairs(sections) do out[#out + 1] = page.section(section.id, section.title, section.html) end
+    for _, section in ipairs(sections) do
+        out[#out + 1] = page.section(section.id, section.title, section.html)
+    end
     out[#out + 1] = ("</main>\n<footer>%s</footer>\n</body>\n</html>\n"):format(escape.xml(footer))
     return table.concat(out)
 end

@@ -16,7 +16,8 @@ local function tallies(caption, list)
         rows[i] = { page.name(tally.what), escape.count(tally.count),
                 tally.first_line > 0 and escape.count(tally.first_line) or "–" }
     end
-    return page.table(caption, { { "what", whole = true }, { "how many", number = true }, { "first in line", number = true } },
+    return page.table(caption, { { "what", whole = true }, { "how many", number = true },
+            { "first in line", number = true } },
             rows)
 end
 
@@ -24,12 +25,14 @@ return function(part)
     local s = part.net:summary()
     local facts = {
         { "Read from", page.name(s.source) },
-        { "Rows", ("%s, of which %s became links of the network"):format(escape.count(s.rows), escape.count(s.events)) },
+        { "Rows", ("%s, of which %s became links of the network"):format(escape.count(s.rows),
+                escape.count(s.events)) },
         { "Network", ("%s and %s that were linked at some time"):format(counted(s.nodes, "place", "places"),
                 counted(s.links, "pair", "pairs")) },
     }
     if s.first then
-        facts[#facts + 1] = { "First and last", ("%s to %s"):format(moments.name(s.first, true), moments.name(s.last, true)) }
+        facts[#facts + 1] = { "First and last", ("%s to %s"):format(moments.name(s.first, true),
+                moments.name(s.last, true)) }
     end
     if s.zone or type(s.first) == "string" then
         facts[#facts + 1] = { "Times", ("local time in %s"):format(page.name(s.zone or "UTC")) }
@@ -41,8 +44,10 @@ return function(part)
     end
     local aside = {
         { "Set aside", counted(s.self_loops, "row", "rows") .. " whose two ends are the same place" },
-        { "Set aside", s.skipped == 0 and "no row as faulty" or counted(s.skipped, "faulty row", "faulty rows") .. ", by reason below" },
-        { "Kept", counted(s.repeats, "row that repeats", "rows that repeat") .. " another in both ends and both times" },
+        { "Set aside", s.skipped == 0 and "no row as faulty"
+                or counted(s.skipped, "faulty row", "faulty rows") .. ", by reason below" },
+        { "Kept", counted(s.repeats, "row that repeats", "rows that repeat")
+                .. " another in both ends and both times" },
     }
     for _, fact in ipairs(aside) do facts[#facts + 1] = fact end
     return "What was read, and what was set aside",

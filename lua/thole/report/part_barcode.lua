@@ -9,7 +9,8 @@ return function(part, id)
     for i = 2, #part do
         local one = part[i]
         local drawn = svg_barcode.draw(one[1], { id = ("%s-%d-"):format(id, i), dims = one.dims })
-        out[#out + 1] = page.figure(svg.inline(drawn), one.title, ("A bar is a piece or a loop for as long as it lasts, on %s.")
+        out[#out + 1] = page.figure(svg.inline(drawn), one.title,
+                ("A bar is a piece or a loop for as long as it lasts, on %s.")
                 :format(drawn.caption))
     end
     out[#out + 1] = "</div>\n" .. '<p class="note">' .. page.text(svg_barcode.legend) ..

@@ -6,7 +6,9 @@ local svg_curve = require "thole.svg_curve"
 
 return function(part)
     local series = {}
-    for i = 2, #part do series[#series + 1] = { barcode = part[i][1], dim = part[i].dim, label = part[i].label } end
+    for i = 2, #part do
+        series[#series + 1] = { barcode = part[i][1], dim = part[i].dim, label = part[i].label }
+    end
     local drawn = svg_curve.draw(series)
     return "How many, hour by hour", page.figure(svg.inline(drawn), nil,
         ("Betti numbers on %s. Each moment is counted with the window whose centre is nearest."):format(drawn.caption))

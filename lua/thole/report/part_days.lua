@@ -10,7 +10,8 @@ local stretches = require "thole.report.stretches"
 local MOST_DAYS = 62
 local DAY = 86400
 
-local COLUMNS = { { "day", whole = true }, { "links that start", number = true }, { "in one piece", number = true },
+local COLUMNS = { { "day", whole = true }, { "links that start", number = true },
+        { "in one piece", number = true },
         { "in several", number = true }, { "no link", number = true }, { "most pieces", number = true },
         { "most loops", number = true } }
 
@@ -53,7 +54,8 @@ return function(part)
         rows[#rows + 1] = {
             page.text((moments.day_name(day, true))), escape.count(starts[day] or 0),
             lasting(function(i) return pieces[i] == 1 end), lasting(function(i) return pieces[i] > 1 end),
-            lasting(function(i) return pieces[i] == 0 end), escape.count(most_within(pieces, shares, left, right)),
+            lasting(function(i) return pieces[i] == 0 end),
+                    escape.count(most_within(pieces, shares, left, right)),
             escape.count(most_within(loops, shares, left, right)) }
     end
     return "Day by day", page.table(("Local days in %s, from the first window to the last; loops at radius %s."):format(

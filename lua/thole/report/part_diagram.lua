@@ -14,5 +14,6 @@ return function(part, id)
             ("%s %s; birth across, death upwards, both in %s. The higher above the diagonal, the longer it lasts.")
             :format(escape.count(drawn.bars), drawn.bars == 1 and "bar" or "bars", drawn.caption))
     end
-    return "Persistence diagrams", table.concat(out) .. '</div>\n<p class="note">' .. page.text(svg_diagram.legend) .. "</p>\n"
+    return "Persistence diagrams", table.concat(out) .. '</div>\n<p class="note">'
+            .. page.text(svg_diagram.legend) .. "</p>\n"
 end

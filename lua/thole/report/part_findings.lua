@@ -21,7 +21,8 @@ end
 
 -- The facts that a report and a program may want: see the fields set below.
 local function gather(bars)
-    local found = { axis = axis.over(bars.windows, bars.zone, bars.unit), shares = moments.shares(bars.windows) }
+    local found = { axis = axis.over(bars.windows, bars.zone, bars.unit),
+            shares = moments.shares(bars.windows) }
     local pieces, loops = bars:betti(0), bars:betti(1)
     found.span = stretches.measure(found.shares, function() return true end)
     found.whole, found.whole_stretch = stretches.measure(found.shares, function(i) return pieces[i] == 1 end)
@@ -54,37 +55,44 @@ return function(part)
         sentences[#sentences + 1] = "<strong>" .. page.text(figures_first) .. "</strong> " .. page.text(rest)
     end
 
-    figure(lasting(f.whole), ("in one piece, of the %s from the first window to the last (%s)"):format(lasting(f.span),
+    figure(lasting(f.whole),
+            ("in one piece, of the %s from the first window to the last (%s)"):format(lasting(f.span),
             percent(f.whole, f.span)))
     figure(lasting(f.empty), ("without any link (%s)"):format(percent(f.empty, f.span)))
     figure(escape.count(f.most_pieces), "pieces at once, at most")
     figure(escape.count(f.most_loops), "loops at once, at most")
 
     if f.whole_stretch then
-        say(lasting(f.whole) .. ":", ("the network was in one piece for that long. The longest unbroken stretch was %s.")
+        say(lasting(f.whole) .. ":",
+                ("the network was in one piece for that long. The longest unbroken stretch was %s.")
                 :format(stretch(f.whole_stretch)))
     else
         say("Never", "was the network in one piece.")
     end
     if f.parted > 0 then
-        say(lasting(f.parted) .. ":", ("it was in two pieces or more. %s at once was the most, first in %s."):format(
+        say(lasting(f.parted) .. ":",
+                ("it was in two pieces or more. %s at once was the most, first in %s."):format(
                 escape.count(f.most_pieces), window(f.most_pieces_at)))
     end
     if f.empty_stretch then
-        say(lasting(f.empty) .. ":", ("nothing was under way. The longest such pause was %s."):format(stretch(f.empty_stretch)))
+        say(lasting(f.empty) .. ":",
+                ("nothing was under way. The longest such pause was %s."):format(stretch(f.empty_stretch)))
     end
     if f.most_loops > 0 then
         say(escape.count(f.most_loops) .. (f.most_loops == 1 and " loop" or " loops"),
-                ("at once was the most (radius %s), first in %s."):format(tostring(bars.radius), window(f.most_loops_at)))
+                ("at once was the most (radius %s), first in %s."):format(tostring(bars.radius),
+                        window(f.most_loops_at)))
     end
     if f.longest then
-        say(lasting(f.longest.lifespan) .. ":", ("the loop that lasted longest; it opens %s and closes %s."):format(
+        say(lasting(f.longest.lifespan) .. ":",
+                ("the loop that lasted longest; it opens %s and closes %s."):format(
                 moments.name(f.longest.opens), moments.name(f.longest.closes)))
     end
 
     local out = { '<ul class="figures">\n' }
     for _, item in ipairs(figures) do
-        out[#out + 1] = ("<li><strong>%s</strong> <span>%s</span></li>\n"):format(page.text(item[1]), page.text(item[2]))
+        out[#out + 1] = ("<li><strong>%s</strong> <span>%s</span></li>\n"):format(page.text(item[1]),
+                page.text(item[2]))
     end
     out[#out + 1] = '</ul>\n<ul class="findings">\n'
     for _, sentence in ipairs(sentences) do out[#out + 1] = "<li>" .. sentence .. "</li>\n" end

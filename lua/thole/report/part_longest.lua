@@ -13,8 +13,10 @@ return function(part)
     local unit = type(bars.windows[1].start) == "number" and (bars.unit or "") or nil
     local rows = {}
     for bar in bars:each { dim = dim, longest = most } do
-        rows[#rows + 1] = { ("%d"):format(#rows + 1), moments.duration(bar.lifespan, unit), moments.name(bar.opens),
-                moments.name(bar.closes), ("%s to %s"):format(escape.number(bar.first), escape.number(bar.last)),
+        rows[#rows + 1] = { ("%d"):format(#rows + 1), moments.duration(bar.lifespan, unit),
+                moments.name(bar.opens),
+                moments.name(bar.closes), ("%s to %s"):format(escape.number(bar.first),
+                        escape.number(bar.last)),
                 page.text(bar.kind) }
     end
     local title = ("The longest %s"):format(many)

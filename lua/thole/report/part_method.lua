@@ -7,7 +7,8 @@ local native = require "thole.native"
 local page = require "thole.report.page"
 
 local function parameter_text(value)
-    if type(value) ~= "table" then return type(value) == "number" and escape.number(value) or tostring(value) end
+    if type(value) == "number" then return escape.number(value) end
+    if type(value) ~= "table" then return tostring(value) end
     local items = {}
     for i, item in ipairs(value) do items[i] = parameter_text(item) end
     return table.concat(items, ",")
@@ -39,7 +40,8 @@ local function windows_text(windows, unit)
         if low == high then return moments.duration(low, unit) end
         return moments.duration(low, unit) .. " to " .. moments.duration(high, unit)
     end
-    local text = ("%s %s of %s"):format(escape.count(#windows), #windows == 1 and "window" or "windows", range(lengths))
+    local text = ("%s %s of %s"):format(escape.count(#windows), #windows == 1 and "window" or "windows",
+            range(lengths))
     if #steps == 0 then return text end
     return text .. ", each starting " .. range(steps) .. " after the one before"
 end
@@ -84,7 +86,8 @@ return function(part)
     for _, bars in ipairs(part.bars) do
         local title = ("Zigzag, radius %s"):format(tostring(bars.radius))
         facts[#facts + 1] = { title, page.text(("%s; joins by %s; %s bars; cells: %s; memory %s"):format(
-            radius_text(bars.radius), bars.join, escape.count(#bars), cells_text(bars.cells), memory_text(bars.peak_bytes))) }
+            radius_text(bars.radius), bars.join, escape.count(#bars), cells_text(bars.cells),
+                    memory_text(bars.peak_bytes))) }
     end
     facts[#facts + 1] = { "Versions", page.text(("Thole %s, %s"):format(native.version, _VERSION)) }
     return "How it was computed", page.facts(facts) .. page.paragraph(

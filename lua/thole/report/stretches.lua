@@ -15,7 +15,9 @@ function stretches.measure(shares, holds)
             else
                 current = { share[1], share[2] }
             end
-            if not best or current[2] - current[1] > best[2] - best[1] then best = { current[1], current[2] } end
+            if not best or current[2] - current[1] > best[2] - best[1] then
+                best = { current[1], current[2] }
+            end
         else
             current = nil
         end

@@ -65,5 +65,6 @@ footer{margin-top:2.5rem;border-top:1px solid var(--rule);padding-top:1rem;color
 ]]
 
 return function()
-    return colours(svg.light) .. "@media (prefers-color-scheme:dark){" .. colours(svg.dark) .. "}\n" .. PAGE .. svg.style()
+    return colours(svg.light) .. "@media (prefers-color-scheme:dark){" .. colours(svg.dark) .. "}\n" .. PAGE
+            .. svg.style()
 end
