@@ -20,7 +20,7 @@ LUA_PC   := $(shell for p in lua5.4 lua-5.4 lua54 lua; do \
 LUA      ?= $(firstword $(shell command -v lua5.4 lua5.4 lua 2>/dev/null) lua5.4)
 LUA_CFLAGS  = $(shell pkg-config --cflags $(LUA_PC))
 LUA_LIBS    = $(shell pkg-config --libs $(LUA_PC))
-CORE_PC  := libarchive
+CORE_PC  := libarchive zlib
 CORE_CFLAGS = $(shell pkg-config --cflags $(CORE_PC))
 CORE_LIBS   = $(shell pkg-config --libs $(CORE_PC)) -lpthread -lm
 
