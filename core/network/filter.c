@@ -6,6 +6,7 @@
 
 #include <math.h>
 
+#include "base/nearest.h"
 #include "base/parallel.h"
 #include "network/store.h"
 
@@ -42,47 +43,21 @@ typedef struct program {
 
 static thole_status refused(program *p) { return tb_refused(p->context->memory, p->error, "a filter"); }
 
-/* Edits between two names, at most `most` + 1; both shorter than 64. */
-static size_t edits(const char *a, const char *b) {
-    size_t n = strlen(a), m = strlen(b), row[64];
-    if (n > 63 || m > 63)
-        return 64;
-    for (size_t j = 0; j <= m; j++)
-        row[j] = j;
-    for (size_t i = 1; i <= n; i++) {
-        size_t corner = row[0];
-        row[0] = i;
-        for (size_t j = 1; j <= m; j++) {
-            size_t up = row[j], cost = corner + (a[i - 1] != b[j - 1]);
-            if (up + 1 < cost)
-                cost = up + 1;
-            if (row[j - 1] + 1 < cost)
-                cost = row[j - 1] + 1;
-            corner = up;
-            row[j] = cost;
-        }
-    }
-    return row[m];
-}
-
 static const char *const own_fields[] = {"from", "to", "start", "finish", "duration"};
 enum { OWN_FIELDS = sizeof own_fields / sizeof *own_fields };
 
+static const char *field_name(const void *network, size_t i) {
+    return i < OWN_FIELDS ? own_fields[i] : thole_network_column_name(network, (uint32_t)(i - OWN_FIELDS));
+}
+
 static thole_status unknown_field(program *p, const char *name) {
-    const char *best = NULL;
-    size_t least = 64;
-    uint32_t columns = thole_network_columns(p->network);
-    for (uint32_t i = 0; i < OWN_FIELDS + columns; i++) {
-        const char *candidate = i < OWN_FIELDS ? own_fields[i] : thole_network_column_name(p->network, i - OWN_FIELDS);
-        size_t distance = edits(name, candidate);
-        if (distance < least) {
-            least = distance;
-            best = candidate;
-        }
-    }
-    if (best != NULL && least <= 1 + strlen(name) / 3)
-        return thole_fail(p->error, THOLE_ARGUMENT, "links have no field \"%s\": did you mean \"%s\"?", name, best);
-    return thole_fail(p->error, THOLE_ARGUMENT, "links have no field \"%s\": they have from, to, start, finish, duration and the columns that were read", name);
+    size_t fields = OWN_FIELDS + thole_network_columns(p->network), best = tb_nearest(name, fields, field_name, p->network);
+    if (best < fields)
+        return thole_fail(p->error, THOLE_ARGUMENT, "links have no field \"%s\": did you mean \"%s\"?", name,
+                          field_name(p->network, best));
+    return thole_fail(p->error, THOLE_ARGUMENT,
+                      "links have no field \"%s\": they have from, to, start, finish, duration and the columns that were read",
+                      name);
 }
 
 static thole_status find_field(program *p, const char *name, node *out) {
