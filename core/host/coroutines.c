@@ -1,5 +1,5 @@
-/* Coroutines and xpcall that a signal can stop: resume, wrap, close and xpcall behave as the standard ones do, and
- * keep th_stop told which thread runs. */
+/* Coroutines and protected calls that do not hold up the end of a recipe: resume, wrap, close, pcall and xpcall behave as the
+ * standard ones do, but keep th_stop told which thread runs, and pass the error of a recipe that ends on. */
 #include "host/host.h"
 
 static lua_State *checked_thread(lua_State *L) {
@@ -34,6 +34,8 @@ static int resume(lua_State *L, lua_State *co, int arguments) {
 static int resume_call(lua_State *L) {
     lua_State *co = checked_thread(L);
     int results = resume(L, co, lua_gettop(L) - 1);
+    if (results < 0 && th_ending())
+        return lua_error(L);
     lua_pushboolean(L, results >= 0);
     lua_insert(L, results >= 0 ? -(results + 1) : -2);
     return results >= 0 ? results + 1 : 2;
@@ -77,6 +79,8 @@ static int close_call(lua_State *L) {
     lua_State *before = th_stop_running(co);
     int status = lua_pcall(L, lua_gettop(L) - 1, LUA_MULTRET, 0);
     th_stop_running(before);
+    if (status == LUA_OK && th_ending())
+        return luaL_error(L, "the run is ending");
     return status == LUA_OK ? lua_gettop(L) : lua_error(L);
 }
 
@@ -91,13 +95,25 @@ static int guarded_handler(lua_State *L) {
     return 1;
 }
 
-static int finish_xpcall(lua_State *L, int status, lua_KContext kept) {
+/* Results after the `kept` lowest values of the stack, or false and the error. */
+static int finish_call(lua_State *L, int status, lua_KContext kept) {
     if (status != LUA_OK && status != LUA_YIELD) {
+        if (th_ending())
+            return lua_error(L);
         lua_pushboolean(L, 0);
         lua_pushvalue(L, -2);
         return 2;
     }
     return lua_gettop(L) - (int)kept;
+}
+
+/* pcall(f, ...): stack becomes true, f, arguments. */
+static int pcall_call(lua_State *L) {
+    luaL_checkany(L, 1);
+    lua_pushboolean(L, 1);
+    lua_insert(L, 1);
+    int status = lua_pcallk(L, lua_gettop(L) - 2, LUA_MULTRET, 0, 0, finish_call);
+    return finish_call(L, status, 0);
 }
 
 /* xpcall(f, handler, ...): stack becomes f, handler, true, f, arguments. */
@@ -110,8 +126,8 @@ static int xpcall_call(lua_State *L) {
     lua_pushboolean(L, 1);
     lua_pushvalue(L, 1);
     lua_rotate(L, 3, 2);
-    int status = lua_pcallk(L, n - 2, LUA_MULTRET, 2, 2, finish_xpcall);
-    return finish_xpcall(L, status, 2);
+    int status = lua_pcallk(L, n - 2, LUA_MULTRET, 2, 2, finish_call);
+    return finish_call(L, status, 2);
 }
 
 void th_coroutines_open(lua_State *L) {
@@ -124,6 +140,8 @@ void th_coroutines_open(lua_State *L) {
     lua_pushcclosure(L, close_call, 1);
     lua_setfield(L, -2, "close");
     lua_pop(L, 1);
+    lua_pushcfunction(L, pcall_call);
+    lua_setglobal(L, "pcall");
     lua_pushcfunction(L, xpcall_call);
     lua_setglobal(L, "xpcall");
 }

@@ -28,14 +28,17 @@ void th_stop_forget(void);
 /* Set as soon as a signal asked to stop; for the core to poll. */
 _Atomic bool *th_stop_flag(void);
 
-/* True once a signal, or th_stop_end, asked the recipe to stop. */
+/* True once a signal asked to stop. */
 bool th_stopping(void);
+
+/* True once th_stop_end was called, until the recipe has unwound. */
+bool th_ending(void);
 
 /* The signal that asked to stop, or 0. */
 int th_stop_signal(void);
 
-/* End the recipe that runs in L; does not return. Code that catches the error is stopped again at its next
- * instruction. */
+/* End the recipe that runs in L; does not return. Unlike a signal this lets the __close of variables run;
+ * pcall, xpcall and resume pass the error on. */
 int th_stop_end(lua_State *L);
 
 /* The recipe is over: let Lua of the host run on in L. */
@@ -49,7 +52,8 @@ int th_stop_resume(lua_State *L, lua_State *co, int arguments, int *results);
 /* Which thread runs from here on; returns the one before. */
 lua_State *th_stop_running(lua_State *now);
 
-/* Put versions of coroutine.resume, wrap and close and of xpcall into the global tables that can be stopped. */
+/* Put versions of coroutine.resume, wrap and close and of pcall and xpcall into the global tables that do not hold
+ * up a recipe that is to stop or to end. */
 void th_coroutines_open(lua_State *L);
 
 /* ---- terminal.c: what a person sees ----------------------------------------------------------- */

@@ -12,7 +12,7 @@ static struct {
     _Atomic(lua_State *) running;
     _Atomic bool flag;
     _Atomic int signal;
-    bool ending; /* the recipe ends itself */
+    bool ending; /* the recipe ends itself; pcall and its kin do not hold that up */
     pthread_t thread;
 } stop;
 
@@ -70,13 +70,14 @@ void th_stop_forget(void) { atomic_store(&stop.running, NULL); }
 
 _Atomic bool *th_stop_flag(void) { return &stop.flag; }
 
-bool th_stopping(void) { return stop.ending || atomic_load(&stop.flag); }
+bool th_stopping(void) { return atomic_load(&stop.flag); }
+
+bool th_ending(void) { return stop.ending; }
 
 int th_stop_signal(void) { return atomic_load(&stop.signal); }
 
 int th_stop_end(lua_State *L) {
     stop.ending = true;
-    arm(L);
     return luaL_error(L, "the run is ending");
 }
 

@@ -41,7 +41,7 @@ end
 
 -- The error with the recipe's line in front, once, and no lines of Thole's own Lua files.
 local function cause(text, place)
-    text = text:gsub("thole/[%w_/]+%.lua:%d+: ", "")
+    text = (" " .. text):gsub("(%s)thole/[%w_/]+%.lua:%d+: ", "%1"):sub(2)
     if place then
         local file = place:match("^(.*):%d+$")
         if text:sub(1, #file + 1) ~= file .. ":" then
@@ -251,6 +251,9 @@ local function run_recipe(host, words)
     host.threads(threads)
     local f, faulty, code, run = prepare(host, recipe, rest, options)
     if not f then
+        if code == FAILED and not faulty:find(recipe .. ":", 1, true) then
+            faulty = recipe .. ": " .. faulty
+        end
         say(host, faulty)
         return code
     end
