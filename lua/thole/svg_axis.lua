@@ -40,10 +40,14 @@ function axis:offset(instant)
     return offset
 end
 
--- The instant of a local time given as seconds since 1970-01-01T00:00:00 local.
+-- The instant of a local time given as seconds since 1970-01-01T00:00:00 local. Of a time that comes
+-- twice the first is taken; for one that the clock jumped over, the offset before the jump counts, so that a
+-- midnight that never came is the moment of the jump.
 function axis:instant(local_seconds)
     local first = local_seconds - self:offset(local_seconds)
-    return local_seconds - self:offset(first)
+    local second = local_seconds - self:offset(first)
+    if second == first or self:offset(second) == self:offset(first) then return second end
+    return local_seconds - self:offset(second)
 end
 
 -- An axis from the first window's start to the last finish of any window.
