@@ -186,7 +186,7 @@ function axis:lines(top, bottom)
     return table.concat(out)
 end
 
--- The ticks that carry a label, as { tick, share of the way }. The day that is under way where the
+-- The ticks that carry a label, as { tick, share of the way, true where the second line has little room }. The day that is under way where the
 -- axis begins has its boundary to the left of the picture; it is named at the edge, where there is room.
 local function labelled(self)
     local chosen, under_way, next_boundary = {}, nil, 1
@@ -200,7 +200,7 @@ local function labelled(self)
         end
     end
     if not under_way or next_boundary <= 0.11 then return chosen end
-    local kept = { { under_way, 0 } }
+    local kept = { { under_way, 0, next_boundary < 0.17 } }
     for _, item in ipairs(chosen) do
         if item[1].strong or item[2] > 0.09 then kept[#kept + 1] = item end
     end
@@ -218,7 +218,7 @@ function axis:labels(sparse)
         local tick, x = item[1], svg.percent(item[2])
         if tick.strong then
             text("day", x, 13, tick.upper)
-            if tick.lower then text("soft", x, 28, tick.lower) end
+            if tick.lower then text(item[3] and "soft wide" or "soft", x, 28, tick.lower) end
         elseif not (sparse and self.has_boundaries) then
             text(tick.wide and "soft wide" or "soft", x, 28, tick.upper)
         end

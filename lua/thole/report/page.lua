@@ -36,7 +36,10 @@ end
 -- A table below the words that explain it. columns: list of { label, number = true, whole = true: a line of
 -- its own on a phone }; the first column heads its row. rows: lists of HTML.
 function page.table(words, columns, rows)
-    local out = { '<p class="note">', escape.xml(words), '</p>\n<table class="stack">\n<thead><tr>' }
+    local numbers = 0
+    for _, column in ipairs(columns) do numbers = numbers + (column.number and 1 or 0) end
+    local out = { '<p class="note">', escape.xml(words), "</p>\n",
+        numbers * 2 > #columns and '<table class="stack tight">\n' or '<table class="stack">\n', "<thead><tr>" }
     for _, column in ipairs(columns) do
         out[#out + 1] = ('<th scope="col"%s>%s</th>'):format(column.number and ' class="number"' or "",
                 escape.xml(column[1]))

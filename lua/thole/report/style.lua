@@ -57,6 +57,7 @@ footer{margin-top:2.5rem;border-top:1px solid var(--rule);padding-top:1rem;color
 .stack thead{position:absolute;width:1px;height:1px;overflow:hidden;clip-path:inset(50%)}
 .stack,.stack tbody{display:block}
 .stack tr{display:grid;grid-template-columns:1fr 1fr;gap:.1rem 1rem;border-bottom:1px solid var(--rule);padding:.6rem 0}
+.stack.tight tr{grid-template-columns:repeat(3,1fr)}
 .stack th,.stack td{border:0;padding:0;text-align:left}
 .stack td::before{content:attr(data-label);display:block;font-size:.8rem;color:var(--soft)}
 .stack .whole{grid-column:1/-1}
