@@ -74,7 +74,7 @@ function shell.environment(build, lua)
         -- that does not end within ten seconds is killed.
         [[interrupt() {
             exec 5<&0; env --default-signal=INT "$@" <&5 2>said & pid=$!
-            n=0; until grep -q ready said || [ $n -ge 200 ]; do sleep 0.05; n=$((n + 1)); done
+            n=0; until grep -qs ready said || [ $n -ge 200 ]; do sleep 0.05; n=$((n + 1)); done
             kill -INT $pid
             n=0; while kill -0 $pid 2>/dev/null && [ $n -lt 200 ]; do sleep 0.05; n=$((n + 1)); done
             kill -KILL $pid 2>/dev/null && echo "did not end" >&2
