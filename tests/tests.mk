@@ -13,3 +13,9 @@ $(BUILD)/tests/%: tests/%.c $(TEST_HELP) $(BUILD)/libthole.a
 .PHONY: test-core
 test-core: $(TEST_BIN)
 	@for t in $(TEST_BIN); do echo "== $$t"; $$t || exit 1; done
+
+# The command: what it says and does, and recipes that try to get out of their confinement.
+.PHONY: test-cli
+test-cli: $(BUILD)/thole $(BUILD)/thole.so
+	$(LUA) tests/cli/cases.lua $(BUILD)
+	$(LUA) tests/cli/escapes.lua $(BUILD)

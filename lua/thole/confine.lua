@@ -19,8 +19,8 @@ local PLAIN_OS = { "clock", "date", "difftime", "time" }
 local PLAIN_IO = { "read", "stderr", "stdin", "stdout", "type", "write" }
 local COLLECT = { collect = true, count = true, step = true }
 
--- Parts of the command itself, which are not for recipes.
-local HIDDEN = { ["thole.command"] = true, ["thole.confine"] = true, ["thole.host"] = true }
+-- Parts of the command itself and the C functions below the Lua half, which are not for recipes.
+local HIDDEN = { ["thole.command"] = true, ["thole.confine"] = true, ["thole.host"] = true, ["thole.native"] = true }
 local CLOSED = { debug = true, package = true, ffi = true }
 
 local function copy(from, names)

@@ -94,6 +94,7 @@ local ATTEMPTS = {
     { "a module of the command", 'require("thole.confine").gate()', says = 'module "thole.confine" is not for recipes' },
     { "the command", 'require("thole.command")', says = 'module "thole.command" is not for recipes' },
     { "the run's description", 'require("thole.host").finish(0)', says = 'module "thole.host" is not for recipes' },
+    { "the native functions", 'require("thole.native")', says = 'module "thole.native" is not for recipes' },
     { "a module elsewhere", 'require("../secret/module")', says = "only thole and Lua files beside the recipe can be required$" },
     { "a module by dots", 'require("..secret.module")', says = "only thole and Lua files beside the recipe can be required$" },
     { "a module by a link", 'require("link.module")', says = "only thole and Lua files beside the recipe can be required$" },
