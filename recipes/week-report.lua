@@ -33,7 +33,8 @@ local filled = net:zigzag { windows = cuts, radius = 1, dims = { 0, 1 }, join = 
 
 thole.report(p.out, {
     title = p.title,
-    lead = ("The links of the log, cut into windows of %s: when they make one network, when it falls apart, and "
+    lead = ("The links of the log, cut into windows of %s: when they make one network, when it falls "
+        .. "apart, and "
         .. "which ways round it has for how long."):format(p.length),
     { "findings", bars = graph },
     { "caution" },

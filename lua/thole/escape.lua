@@ -47,8 +47,8 @@ function escape.csv(text)
     return text
 end
 
-local SHORT = { ['"'] = '\\"', ["\\"] = "\\\\", ["\b"] = "\\b", ["\f"] = "\\f", ["\n"] = "\\n", ["\r"] = "\\r",
-        ["\t"] = "\\t" }
+local SHORT = { ['"'] = '\\"', ["\\"] = "\\\\", ["\b"] = "\\b", ["\f"] = "\\f", ["\n"] = "\\n",
+    ["\r"] = "\\r", ["\t"] = "\\t" }
 
 -- A JSON string (RFC 8259), quotes and all.
 function escape.json(text)

@@ -1,29 +1,50 @@
 -- Tables of options as the Lua half takes them: a key that is not known, or a value of the wrong type,
--- is refused with the nearest name.
+-- is refused at the recipe's line, with the nearest name.
 
+local native = require "thole.native"
 local nearest = require "thole.nearest"
 
 local options = {}
 
--- opts: what was given (nil: nothing). known: name -> type as type() calls it. where: the function's name
--- for messages. level: as in error(), counted from the caller of check; 2 unless told.
-function options.check(opts, known, where, level)
-    level = (level or 2) + 1
-    if opts == nil then return {} end
+-- A value's type for messages and checks: "barcode", "network" or "windows" for things of Thole, else Lua's.
+function options.kind(value)
+    local meta = getmetatable(value)
+    local name = type(meta) == "table" and rawget(meta, "__name")
+    return type(name) == "string" and name:match("^thole%.(%a+)") or type(value)
+end
+
+-- "a barcode", "an output".
+function options.article(kind)
+    return (kind:find("^[aeiou]") and "an " or "a ") .. kind
+end
+
+-- opts: the table given, or nil. known: name -> kind; "!" after it: must be there. where: the function's
+-- name for messages. List items (1, 2, …) are not looked at when items is true.
+function options.check(opts, known, where, items)
+    if opts == nil then opts = {} end
     if type(opts) ~= "table" then
-        error(("%s takes its options in a table, not in a %s"):format(where, type(opts)), level)
+        native.fail(("%s takes its options in a table, not in %s"):format(where, options.article(type(opts))))
     end
     for key, value in pairs(opts) do
-        if type(key) ~= "string" or not known[key] then
+        local wanted = type(key) == "string" and known[key]
+        if wanted then
+            wanted = wanted:match("^%a+")
+            local kind = options.kind(value)
+            if kind ~= wanted then
+                native.fail(('option "%s" of %s must be %s, not %s'):format(key, where,
+                    options.article(wanted), options.article(kind)))
+            end
+        elseif not (items and math.type(key) == "integer") then
             local names = {}
             for name in pairs(known) do names[#names + 1] = name end
             table.sort(names)
-            error(('%s has no option "%s": %s'):format(where, tostring(key),
-                    nearest.hint(tostring(key), names)), level)
+            native.fail(('%s has no option "%s"%s'):format(where, tostring(key),
+                #names > 0 and ": " .. nearest.hint(tostring(key), names) or ""))
         end
-        if type(value) ~= known[key] then
-            error(('option "%s" of %s must be a %s, not a %s'):format(key, where, known[key], type(value)),
-                    level)
+    end
+    for name, kind in pairs(known) do
+        if kind:find("!$") and opts[name] == nil then
+            native.fail(("%s needs %s = …, %s"):format(where, name, options.article(kind:match("^%a+"))))
         end
     end
     return opts

@@ -47,7 +47,8 @@ end
 
 -- Style rules of all charts, under a selector that holds them ("" for a picture that stands alone).
 function svg.style()
-    return rules(LIGHT) .. "\n.passing{stroke-dasharray:2 2}\n@media (max-width:44rem){.wide{display:none}}\n" ..
+    return rules(LIGHT) .. "\n.passing{stroke-dasharray:2 2}\n" ..
+        "@media (max-width:44rem){.wide{display:none}}\n" ..
             "@media (prefers-color-scheme:dark){\n" .. rules(DARK) .. "\n}\n"
 end
 

@@ -3,6 +3,7 @@
 
 local escape = require "thole.escape"
 local moments = require "thole.moments"
+local native = require "thole.native"
 local svg = require "thole.svg"
 
 local axis = {}
@@ -153,6 +154,15 @@ function axis:calendar_ticks()
     return ticks
 end
 
+-- Refuse a dimension that the barcode was not computed in: an empty chart would look like a result.
+function axis.check_dim(barcode, dim)
+    for _, known in ipairs(barcode.dims) do
+        if known == dim then return dim end
+    end
+    native.fail(("dimension %s is not among those of this barcode, %s: ask net:zigzag for it with dims")
+        :format(tostring(dim), table.concat(barcode.dims, ", ")))
+end
+
 -- A number on the axis for people: local time, or the plain number.
 function axis:name(at)
     if not self.calendar then return escape.number(at) end
@@ -186,8 +196,9 @@ function axis:lines(top, bottom)
     return table.concat(out)
 end
 
--- The ticks that carry a label, as { tick, share of the way, true where the second line has little room }. The day that is under way where the
--- axis begins has its boundary to the left of the picture; it is named at the edge, where there is room.
+-- The ticks that carry a label, as { tick, share of the way, true where the second line has little room }.
+-- The day that is under way where the axis begins has its boundary to the left of the picture; it is named
+-- at the edge, where there is room.
 local function labelled(self)
     local chosen, under_way, next_boundary = {}, nil, 1
     for _, tick in ipairs(self.ticks) do

@@ -70,8 +70,10 @@ local function shapes(id, pitch)
     local ring = math.min(size / 2, 3.5) - 0.5
     return ([[
 <defs>
-<marker id="%s-post" markerUnits="userSpaceOnUse" markerWidth="4" markerHeight="%d" refX="2" refY="%s"><rect class="solid" x="1" width="2" height="%d"/></marker>
-<marker id="%s-ring" markerUnits="userSpaceOnUse" markerWidth="10" markerHeight="10" refX="5" refY="5"><circle class="hollow" cx="5" cy="5" r="%s"/></marker>
+<marker id="%s-post" markerUnits="userSpaceOnUse" markerWidth="4" markerHeight="%d" refX="2" refY="%s">
+<rect class="solid" x="1" width="2" height="%d"/></marker>
+<marker id="%s-ring" markerUnits="userSpaceOnUse" markerWidth="10" markerHeight="10" refX="5" refY="5">
+<circle class="hollow" cx="5" cy="5" r="%s"/></marker>
 </defs>
 ]]):format(id, size, svg.decimal(size / 2), size, id, svg.decimal(ring))
 end
@@ -122,7 +124,8 @@ local function panel(barcode, dim, scale, id, top)
 end
 
 -- What the shapes mean, as plain text for a caption.
-local LEGEND = "A post is a closed end, a ring an open one. At the left, a post: links were added; a ring: links " ..
+local LEGEND = "A post is a closed end, a ring an open one. At the left, a post: links were added; a "
+    .. "ring: links " ..
         "went. At the right, a post: links went; a ring: links were added."
 
 local chart = { words = words, legend = LEGEND }
@@ -135,6 +138,7 @@ function chart.draw(barcode, opts)
     local id = opts.id or "bars"
     local top, panels, tops = axis.height, {}, {}
     for _, dim in ipairs(opts.dims or barcode.dims) do
+        axis.check_dim(barcode, dim)
         local drawing, height = panel(barcode, dim, scale, ("%s%d"):format(id, dim), top)
         panels[#panels + 1] = drawing
         tops[#tops + 1] = top

@@ -40,9 +40,9 @@ local function columns(numbers, shares, scale, most, top)
         end
         if value > 0 and right > left then
             local height = BODY * value / most
-            out[#out + 1] = ('<rect class="step" x="%s" y="%s" width="%s" height="%s"/>\n'):format(scale:x(left),
-                svg.decimal(top + BODY - height, 1), svg.percent(scale:place(right) - scale:place(left)),
-                        svg.decimal(height, 1))
+            local width = scale:place(right) - scale:place(left)
+            out[#out + 1] = ('<rect class="step" x="%s" y="%s" width="%s" height="%s"/>\n'):format(
+                scale:x(left), svg.decimal(top + BODY - height, 1), svg.percent(width), svg.decimal(height, 1))
         end
         i = i + 1
     end
@@ -57,7 +57,7 @@ function chart.draw(series, opts)
     local shares = moments.shares(first.windows)
     local top, out = axis.height, {}
     for _, curve in ipairs(series) do
-        local numbers = curve.barcode:betti(curve.dim)
+        local numbers = curve.barcode:betti(axis.check_dim(curve.barcode, curve.dim))
         local most = 1
         for _, value in ipairs(numbers) do most = math.max(most, value) end
         out[#out + 1] = ('<line class="frame" x1="0" x2="100%%" y1="%d" y2="%d"/>\n'):format(top, top)

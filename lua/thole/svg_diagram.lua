@@ -10,7 +10,8 @@ local words = require("thole.svg_barcode").words
 
 local chart = {}
 
-chart.legend = "Square: both ends closed. Ring: both ends open. Triangle pointing right: closed, then open. " ..
+chart.legend = "Square: both ends closed. Ring: both ends open. Triangle pointing right: closed, then "
+    .. "open. " ..
         "Triangle pointing left: open, then closed. A larger mark stands for several bars: 2 to 4, 5 or more."
 
 local function square(r)
@@ -90,7 +91,7 @@ end
 function chart.draw(barcode, opts)
     opts = opts or {}
     local dims = barcode.dims
-    local dim = opts.dim or dims[#dims]
+    local dim = axis.check_dim(barcode, opts.dim or dims[#dims])
     local id = opts.id or "dots"
     local scale = axis.over(barcode.windows, barcode.zone, barcode.unit)
     local marks = gather(barcode, dim)

@@ -2,6 +2,7 @@
 -- value is an empty field. Numbers have a decimal point, times are ISO 8601 with offset.
 
 local escape = require "thole.escape"
+local native = require "thole.native"
 local rows = require "thole.write_rows"
 
 local function field(cell)
@@ -10,7 +11,7 @@ local function field(cell)
     if kind == "number" then return escape.number(cell) end
     if kind == "string" then return escape.csv(cell) end
     if kind == "boolean" then return tostring(cell) end
-    error(("a %s cannot stand in a table: write text, a number, true or false"):format(kind), 0)
+    native.fail(("a %s cannot stand in a table: write text, a number, true or false"):format(kind))
 end
 
 return function(thing, out)

@@ -2,6 +2,7 @@
 -- value is null. Numbers are written exactly as in CSV, times of a calendar clock as text.
 
 local escape = require "thole.escape"
+local native = require "thole.native"
 local rows = require "thole.write_rows"
 
 local function value(cell, column)
@@ -10,11 +11,11 @@ local function value(cell, column)
     if kind == "boolean" then return tostring(cell) end
     if kind == "string" then return column.numeric and cell or escape.json(cell) end
     if kind ~= "number" then
-        error(("a %s cannot stand in a table: write text, a number, true or false"):format(kind), 0)
+        native.fail(("a %s cannot stand in a table: write text, a number, true or false"):format(kind))
     end
     if cell ~= cell or cell == math.huge or cell == -math.huge then
-        error(('column "%s" holds %s, which JSON has no number for: leave it out, or write it as text')
-                :format(column.name, escape.number(cell)), 0)
+        native.fail(('column "%s" holds %s, which JSON has no number for: leave it out, or write it as text')
+                :format(column.name, escape.number(cell)))
     end
     return escape.number(cell)
 end

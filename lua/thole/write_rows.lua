@@ -6,6 +6,8 @@
 --   next_row: iterator that gives one list of cells a row. A cell is a string, a number, a boolean or nil
 --     (missing); in a numeric column a string is the exact text of a number.
 
+local options = require "thole.options"
+
 local rows = {}
 
 local BAR_COLUMNS = { "dim", "first", "last", "kind", "birth", "death", "opens", "closes" }
@@ -69,11 +71,8 @@ local MAKERS = { barcode = of_barcode, network = of_network, windows = of_window
 -- What a thing is: "barcode", "network", "windows", "table" (with columns and rows), "text", or nil.
 function rows.kind(thing)
     if type(thing) == "string" then return "text" end
-    local meta = getmetatable(thing)
-    local name = type(meta) == "table" and meta.__name or ""
-    local own = name:match("^thole%.(%a+)")
-    if own and MAKERS[own] then return own end
-    if type(thing) ~= "table" then return nil end
+    local kind = options.kind(thing)
+    if kind ~= "table" then return MAKERS[kind] and kind or nil end
     if type(thing.columns) == "table" and type(thing.rows) == "table" then return "table" end
     return nil
 end

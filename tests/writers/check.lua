@@ -50,6 +50,7 @@ function check.without_core()
     package.preload["thole.native"] = function()
         return {
             version = "0.0.0",
+            fail = function(text) error(text, 0) end,
             create = function(path)
                 local pieces = {}
                 return setmetatable({

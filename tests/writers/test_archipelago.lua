@@ -15,7 +15,8 @@ os.remove(folder)
 assert(os.execute("mkdir " .. folder))
 assert(os.execute("lua5.4 recipes/data/make_archipelago.lua " .. folder))
 for _, name in ipairs { "archipelago-week.csv", "archipelago-places.csv" } do
-    check.truthy(slurp(folder .. "/" .. name) == slurp("recipes/data/" .. name), name .. " is not what its generator makes")
+    check.truthy(slurp(folder .. "/" .. name) == slurp("recipes/data/" .. name), name .. " is not what "
+        .. "its generator makes")
     os.remove(folder .. "/" .. name)
 end
 os.remove(folder)

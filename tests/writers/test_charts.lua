@@ -54,8 +54,15 @@ check.fails(function() write("c.xyz", bars) end, ".csv, .jsonl or .svg")
 check.fails(function() write("c.csv", 12) end, "can not be written")
 check.fails(function() write("c.svg", plain) end, "an SVG file shows a barcode")
 check.fails(function() write("c.svg", bars, { vew = "diagram" }) end, 'did you mean "view"?')
-check.fails(function() write("c.svg", bars, { view = "map" }) end, 'unknown view "map"')
-check.fails(function() write("c.csv", { columns = { "a" }, rows = { { {} } } }) end, "a table cannot stand in a table")
+check.fails(function() write("c.svg", bars, { view = "map" }) end, 'there is no view "map"')
+check.fails(function() write("c.svg", bars, { dim = 2 }) end, "dimension 2 is not among those of this "
+    .. "barcode, 0, 1")
+check.fails(function() write("c.svg", bars, { view = "diagram", dim = 3 }) end, "dimension 3 is not among")
+check.fails(function() write("c.svg", bars, { dim = "1" }) end, 'option "dim" of thole.write must be a '
+    .. 'number')
+check.fails(function() write(7, bars) end, "must be text, not a number")
+check.fails(function() write("c.csv", { columns = { "a" }, rows = { { {} } } }) end, "a table cannot "
+    .. "stand in a table")
 check.fails(function() write("c.jsonl", { columns = { "a" }, rows = { { 1 }, { 0 / 0 } } }) end, "JSON has no number for")
 check.fails(function() write("c.csv", bars, { format = function() error("of mine", 0) end }) end, "of mine")
 check.equal(check.files["c.csv"], nil)
@@ -123,7 +130,8 @@ for _ = 1, 20 * check.cases do
     end
     local kind, drawn = nil, {}
     for line in text:gmatch("[^\n]+") do
-        local first, last = line:match('marker%-start="url%(#[%w-]+%-(%a+)%)" marker%-end="url%(#[%w-]+%-(%a+)%)"')
+        local first, last = line:match('marker%-start="url%(#[%w-]+%-(%a+)%)" '
+            .. 'marker%-end="url%(#[%w-]+%-(%a+)%)"')
         if first then kind = SHAPES[first] .. "-" .. SHAPES[last] end
         if line:find("<line", 1, true) and line:find("<title>", 1, true) then
             local x1, x2, y = attribute(line, "x1"), attribute(line, "x2"), attribute(line, "y1")

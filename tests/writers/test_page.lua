@@ -23,7 +23,7 @@ report("p.html", { title = NASTY, lead = NASTY,
     { "findings", bars = bars }, { "caution", NASTY }, { "days", bars = bars, net = net },
     { "betti", { bars, dim = 0, label = NASTY } }, { "barcode", { bars, title = NASTY } },
     { "diagram", { bars, dim = 1, title = NASTY } }, { "longest", bars = bars, dim = 1 },
-    { "longest", bars = bars, dim = 2 }, { "account", net = net }, { "text", title = NASTY, NASTY },
+    { "longest", bars = stand_in.barcode(windows, {}), dim = 1 }, { "account", net = net }, { "text", title = NASTY, NASTY },
     { "method", recipe = NASTY, parameters = { [NASTY] = NASTY, dims = { 0, 1 } }, net = net, bars = { bars } } })
 local html = check.files["p.html"]
 
@@ -34,7 +34,8 @@ check.truthy(not html:find("%z"))
 for _, piece in ipairs { "http:", "https:", "src=", "@import", "url(h", "javascript:", "onload", "onclick" } do
     check.truthy(not html:find(piece, 1, true), "the page holds " .. piece)
 end
-for target in html:gmatch('href="([^"]*)"') do check.equal(target:sub(1, 1), "#", "a link leads out of the page") end
+for target in html:gmatch('href="([^"]*)"') do check.equal(target:sub(1, 1), "#", "a link leads out of "
+    .. "the page") end
 for id in html:gmatch('href="#([^"]*)"') do
     check.truthy(html:find(('id="%s"'):format(id), 1, true), "no target for #" .. id)
 end
@@ -55,7 +56,7 @@ for _, piece in ipairs {
     "1 loop at once was the most",
     "1 row whose two ends are the same place", "3 faulty rows", "1,234", "2 rows that repeat",
     "9, of which 5 became links", "6 windows of 1 h, each starting 1 h after the one before",
-    "There are no hollows.", "timetable, not of what sails", "people licensed for the work",
+    "There are no loops.", "timetable, not of what sails", "people licensed for the work",
 } do
     check.truthy(words:find(piece, 1, true), "the page does not say: " .. piece)
 end
@@ -66,6 +67,15 @@ check.truthy(words:find("1 1 h Mon 3 Mar 01:00 Mon 3 Mar 03:00 2 to 3 closed-ope
 
 check.fails(function() report("q.html", { { "acount" } }) end, 'did you mean "account"?')
 check.fails(function() report("q.html", {}) end, "needs a list of parts")
+check.fails(function() report("q.html", { { "longest", bars = bars } }) end, 'part "longest" needs dim = '
+    .. '…, a number')
+check.fails(function() report("q.html", { { "days", bars = bars, net = bars } }) end, "must be a network, "
+    .. "not a barcode")
+check.fails(function() report("q.html", { { "betti", { bars, dim = 2, label = "x" } } }) end, "dimension 2 is not among")
+check.fails(function() report("q.html", { { "betti" } }) end, "needs a list")
+check.fails(function() report("q.html", { { "barcode", { net } } }) end, "begin with a barcode")
+check.fails(function() report("q.html", { { "text", 12 } }) end, "takes paragraphs, not a number")
+check.fails(function() report("q.html", { ttle = "x", { "caution" } }) end, 'did you mean "title"?')
 check.equal(check.files["q.html"], nil)
 
 check.finish()

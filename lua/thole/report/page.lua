@@ -38,8 +38,8 @@ end
 function page.table(words, columns, rows)
     local numbers = 0
     for _, column in ipairs(columns) do numbers = numbers + (column.number and 1 or 0) end
-    local out = { '<p class="note">', escape.xml(words), "</p>\n",
-        numbers * 2 > #columns and '<table class="stack tight">\n' or '<table class="stack">\n', "<thead><tr>" }
+    local out = { '<p class="note">', escape.xml(words), '</p>\n<table class="stack',
+        numbers * 2 > #columns and " tight" or "", '">\n<thead><tr>' }
     for _, column in ipairs(columns) do
         out[#out + 1] = ('<th scope="col"%s>%s</th>'):format(column.number and ' class="number"' or "",
                 escape.xml(column[1]))
@@ -68,7 +68,8 @@ function page.document(title, lead, sections, footer)
         '<meta name="viewport" content="width=device-width, initial-scale=1">\n',
         '<meta name="color-scheme" content="light dark">\n',
         -- Nothing is fetched and nothing runs, whatever the data hold.
-        '<meta http-equiv="Content-Security-Policy" content="default-src \'none\'; style-src \'unsafe-inline\'">\n',
+        '<meta http-equiv="Content-Security-Policy" content="default-src \'none\'; style-src '
+        .. '\'unsafe-inline\'">\n',
         "<title>", escape.xml(title), "</title>\n<style>\n", require("thole.report.style")(),
                 "</style>\n</head>\n<body>\n",
         "<header>\n<h1>", escape.xml(title), "</h1>\n",

@@ -11,5 +11,6 @@ return function(part)
     end
     local drawn = svg_curve.draw(series)
     return "How many, hour by hour", page.figure(svg.inline(drawn), nil,
-        ("Betti numbers on %s. Each moment is counted with the window whose centre is nearest."):format(drawn.caption))
+        ("Betti numbers on %s. Each moment is counted with the window whose centre is nearest.")
+            :format(drawn.caption))
 end

@@ -36,6 +36,8 @@ return function(part)
     local bars = part.bars
     local windows = bars.windows
     if not moments.is_calendar(windows[1].start) then return nil end
+    axis.check_dim(bars, 0)
+    axis.check_dim(bars, 1)
     local scale = axis.over(windows, bars.zone)
     local first = moments.local_day(windows[1].start)
     local last = (math.ceil(scale.high) - 1 + scale:offset(scale.high)) // DAY
@@ -58,6 +60,7 @@ return function(part)
                     escape.count(most_within(pieces, shares, left, right)),
             escape.count(most_within(loops, shares, left, right)) }
     end
-    return "Day by day", page.table(("Local days in %s, from the first window to the last; loops at radius %s."):format(
+    return "Day by day", page.table(("Local days in %s, from the first window to the last; loops at "
+        .. "radius %s."):format(
         bars.zone or "UTC", tostring(bars.radius)), COLUMNS, rows)
 end

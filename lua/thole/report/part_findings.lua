@@ -38,6 +38,8 @@ end
 
 return function(part)
     local bars = part.bars
+    axis.check_dim(bars, 0)
+    axis.check_dim(bars, 1)
     local f = gather(bars)
     local unit = not f.axis.calendar and (bars.unit or "") or nil
     local function lasting(x) return moments.duration(x, unit) end
@@ -96,7 +98,9 @@ return function(part)
     end
     out[#out + 1] = '</ul>\n<ul class="findings">\n'
     for _, sentence in ipairs(sentences) do out[#out + 1] = "<li>" .. sentence .. "</li>\n" end
-    out[#out + 1] = '</ul>\n<p class="note">A place counts in a window only while one of its links is active, so ' ..
-        "pieces are pieces of what runs. A loop is a way round that comes back to its beginning by other links.</p>\n"
+    out[#out + 1] = '</ul>\n<p class="note">A place counts in a window only while one of its links is '
+        .. 'active, so ' ..
+        "pieces are pieces of what runs. A loop is a way round that comes back to its beginning by other "
+        .. "links.</p>\n"
     return "What stands out", table.concat(out)
 end

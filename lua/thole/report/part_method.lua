@@ -70,8 +70,11 @@ end
 local function radius_text(radius)
     if radius == "graph" then return "radius graph (places and links only)" end
     if radius == 0 then return "radius 0 (places only)" end
-    if radius == 1 then return "radius 1 (three places all linked to one another are filled in, and so on upwards)" end
-    return ("radius %s (places up to %s links apart count as near; whatever is near to one another is filled in)")
+    if radius == 1 then
+        return "radius 1 (three places all linked to one another are filled in, and so on upwards)"
+    end
+    return ("radius %s (places up to %s links apart count as near; whatever is near to one another is "
+        .. "filled in)")
             :format(radius, radius)
 end
 
@@ -91,9 +94,14 @@ return function(part)
     end
     facts[#facts + 1] = { "Versions", page.text(("Thole %s, %s"):format(native.version, _VERSION)) }
     return "How it was computed", page.facts(facts) .. page.paragraph(
-        "A link is in a window when it is active at some instant of it, its finish not included. Between two neighbouring " ..
-        "windows stands their join: the links of both (union), or those that both have (intersection). The barcode is " ..
-        "the interval decomposition of the zigzag of homology groups with coefficients in Z/2, by the method of Dey and " ..
-        "Hou (“Fast computation of zigzag persistence”, ESA 2022) in blocks of time that are glued by the interval " ..
-        "decomposition of Carlsson and de Silva (“Zigzag persistence”, Foundations of Computational Mathematics 10, 2010).")
+        "A link is in a window when it is active at some instant of it, its finish not included. Between "
+        .. "two neighbouring " ..
+        "windows stands their join: the links of both (union), or those that both have (intersection). "
+        .. "The barcode is " ..
+        "the interval decomposition of the zigzag of homology groups with coefficients in Z/2, by the "
+        .. "method of Dey and " ..
+        "Hou (“Fast computation of zigzag persistence”, ESA 2022) in blocks of time that are glued by the "
+        .. "interval " ..
+        "decomposition of Carlsson and de Silva (“Zigzag persistence”, Foundations of Computational "
+        .. "Mathematics 10, 2010).")
 end
