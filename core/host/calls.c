@@ -29,7 +29,8 @@ static int note_place(lua_State *L) {
     lua_Debug frame;
     for (int level = 1; lua_getstack(L, level, &frame); level++) {
         lua_getinfo(L, "Sl", &frame);
-        if (frame.currentline > 0 && frame.source[0] == '@' && strncmp(frame.source, OWN_CHUNKS, sizeof OWN_CHUNKS - 1) != 0) {
+        if (frame.currentline > 0 && frame.source[0] == '@' &&
+            strncmp(frame.source, OWN_CHUNKS, sizeof OWN_CHUNKS - 1) != 0) {
             lua_pushfstring(L, "%s:%d", frame.short_src, frame.currentline);
             lua_setfield(L, LUA_REGISTRYINDEX, WHERE);
             break;
@@ -63,7 +64,8 @@ static void push_error_text(lua_State *L) {
         lua_pushvalue(L, -2);
         if (lua_pcall(L, 1, 1, 0) != LUA_OK) {
             lua_pop(L, 1);
-            lua_pushfstring(L, "an error that is a %s, whose __tostring fails", type == LUA_TTABLE ? "table" : "userdata");
+            lua_pushfstring(L, "an error that is a %s, whose __tostring fails",
+                            type == LUA_TTABLE ? "table" : "userdata");
         }
     }
 }
@@ -241,13 +243,20 @@ static int stopped(lua_State *L) {
 
 void th_calls_push(lua_State *L) {
     static const luaL_Reg functions[] = {
-        {"call", call},       {"ending", ending},
-        {"finish", finish},   {"gate", gate},
-        {"kind", kind},       {"load", load},
-        {"make_folder", make_folder}, {"processors", processors},
-        {"real", real},       {"say", say},
-        {"show_progress", show_progress}, {"stopped", stopped},
-        {"threads", threads}, {NULL, NULL},
+        {"call", call},
+        {"ending", ending},
+        {"finish", finish},
+        {"gate", gate},
+        {"kind", kind},
+        {"load", load},
+        {"make_folder", make_folder},
+        {"processors", processors},
+        {"real", real},
+        {"say", say},
+        {"show_progress", show_progress},
+        {"stopped", stopped},
+        {"threads", threads},
+        {NULL, NULL},
     };
     luaL_newlib(L, functions);
 }

@@ -1,5 +1,6 @@
-/* Coroutines and protected calls that do not hold up the end of a recipe: resume, wrap, close, pcall and xpcall behave as the
- * standard ones do, but keep th_stop told which thread runs, and pass the error of a recipe that ends on. */
+/* Coroutines and protected calls that do not hold up the end of a recipe: resume, wrap, close, pcall and
+ * xpcall behave as the standard ones do, but keep th_stop told which thread runs, and pass the error of a
+ * recipe that ends on. */
 #include "host/host.h"
 
 static lua_State *checked_thread(lua_State *L) {
@@ -41,7 +42,8 @@ static int resume_call(lua_State *L) {
     return results >= 0 ? results + 1 : 2;
 }
 
-/* What coroutine.wrap returns; its upvalue is the coroutine. Errors get a position, as they do from the standard one. */
+/* What coroutine.wrap returns; its upvalue is the coroutine. Errors get a position, as they do from the
+ * standard one. */
 static int wrapped_call(lua_State *L) {
     lua_State *co = lua_tothread(L, lua_upvalueindex(1));
     int results = resume(L, co, lua_gettop(L));
@@ -84,8 +86,8 @@ static int close_call(lua_State *L) {
     return status == LUA_OK ? lua_gettop(L) : lua_error(L);
 }
 
-/* A recipe's message handler, the upvalue. It runs inside the hook, where no other hook runs, when it is the hook
- * that raised: an endless one could not be stopped, and is not asked. */
+/* A recipe's message handler, the upvalue. It runs inside the hook, where no other hook runs, when it is the
+ * hook that raised: an endless one could not be stopped, and is not asked. */
 static int guarded_handler(lua_State *L) {
     if (th_stopping())
         return 1;

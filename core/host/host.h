@@ -1,8 +1,8 @@
 /* Inside the host: the `thole` command around one Lua state.
  *
- * main.c opens the state and does everything inside one protected call; the command line, confinement and help
- * are Lua (lua/thole/command.lua, confine.lua) on the functions of calls.c. One run a process: what a signal
- * handler must see is the only state that is not in the Lua state. */
+ * main.c opens the state and does everything inside one protected call; the command line, confinement and
+ * help are Lua (lua/thole/command.lua, confine.lua) on the functions of calls.c. One run a process: what a
+ * signal handler must see is the only state that is not in the Lua state. */
 #ifndef TH_HOST_H
 #define TH_HOST_H
 
@@ -18,8 +18,8 @@ enum { TH_DONE = 0, TH_FAILED = 1, TH_USAGE = 2, TH_SIGNAL = 128 };
 
 /* ---- stop.c: ending a run before its end ------------------------------------------------------ */
 
-/* Catch SIGINT and SIGTERM (unless they are ignored, as for a job in the background), and ignore SIGPIPE, so that
- * a closed pipe is an error of writing. The first signal asks to stop, the second one kills. */
+/* Catch SIGINT and SIGTERM (unless they are ignored, as for a job in the background), and ignore SIGPIPE, so
+ * that a closed pipe is an error of writing. The first signal asks to stop, the second one kills. */
 void th_stop_install(lua_State *L);
 
 /* Nothing runs any more: signals only set the flag. Before the state is closed. */
@@ -52,8 +52,8 @@ int th_stop_resume(lua_State *L, lua_State *co, int arguments, int *results);
 /* Which thread runs from here on; returns the one before. */
 lua_State *th_stop_running(lua_State *now);
 
-/* Put versions of coroutine.resume, wrap and close and of pcall and xpcall into the global tables that do not hold
- * up a recipe that is to stop or to end. */
+/* Put versions of coroutine.resume, wrap and close and of pcall and xpcall into the global tables that do not
+ * hold up a recipe that is to stop or to end. */
 void th_coroutines_open(lua_State *L);
 
 /* ---- terminal.c: what a person sees ----------------------------------------------------------- */

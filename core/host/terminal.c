@@ -36,8 +36,8 @@ void th_progress_clear(void) {
     }
 }
 
-/* "reading week.csv 43 %"; without a share where it is not known. Columns are bytes here, which only makes a line
- * that is not ASCII shorter than it could be. */
+/* "reading week.csv 43 %"; without a share where it is not known. Columns are bytes here, which only makes a
+ * line that is not ASCII shorter than it could be. */
 static void draw(const char *phase, double done) {
     char line[WIDEST + 1];
     int length = 0; /* of the phase, cut at a character */
@@ -45,8 +45,9 @@ static void draw(const char *phase, double done) {
         length++;
     while (length > 0 && ((unsigned char)phase[length] & 0xc0) == 0x80)
         length--;
-    int n = done >= 0 && done <= 1 ? snprintf(line, sizeof line, "%.*s %d %%", length, phase, (int)(done * 100))
-                                   : snprintf(line, sizeof line, "%.*s", length, phase);
+    int n = done >= 0 && done <= 1
+                ? snprintf(line, sizeof line, "%.*s %d %%", length, phase, (int)(done * 100))
+                : snprintf(line, sizeof line, "%.*s", length, phase);
     if (n <= 0)
         return;
     for (char *at = line; *at != '\0'; at++)

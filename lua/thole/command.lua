@@ -9,9 +9,11 @@ local param_help = require "thole.param_help"
 local DONE, FAILED, USAGE = 0, 1, 2
 
 local OPTIONS = {
-    { name = "out", value = "DIR", help = "folder that outputs are written in, made when it is not there (default: here)" },
+    { name = "out", value = "DIR",
+        help = "folder that outputs are written in, made when it is not there (default: here)" },
     { name = "quiet", help = "no progress on the terminal" },
-    { name = "threads", value = "N", help = "worker threads, 1 to 256; results do not depend on it (default: one a processor)" },
+    { name = "threads", value = "N",
+        help = "worker threads, 1 to 256; results do not depend on it (default: one a processor)" },
     { name = "trace", help = "show where an error came from, call by call" },
     { name = "trust", help = "let the recipe do all that Lua can do; see thole help confinement" },
 }
@@ -220,7 +222,8 @@ local function prepare(host, recipe, words, options)
     -- Names of chunks that begin with "thole/" are those of the Lua half.
     local path = recipe:find("^thole/") and "./" .. recipe or recipe
     local shown = path:match("^.*/") or ""
-    local gate = run.asks_help and closed_gate(host, run) or confine.gate(host, own, out, values_given(words), options.trust)
+    local gate = run.asks_help and closed_gate(host, run)
+        or confine.gate(host, own, out, values_given(words), options.trust)
     host.gate(gate)
     local f
     if options.trust then
@@ -279,7 +282,8 @@ local function run_recipe(host, words)
     elseif run.asks_help and not run.declared then
         print(no_parameters(run))
     elseif #rest > 0 and not run.declared then
-        return usage(host, '%s: this recipe has no parameters: leave out "%s"', recipe, table.concat(rest, " "))
+        return usage(host, '%s: this recipe has no parameters: leave out "%s"', recipe,
+            table.concat(rest, " "))
     end
     return DONE
 end
@@ -351,8 +355,8 @@ local function show_version(host, words)
 end
 
 COMMANDS = {
-    { name = "run", words = "run RECIPE [name=value …]", help = "run a recipe; thole run RECIPE help lists its parameters",
-        call = run_recipe },
+    { name = "run", words = "run RECIPE [name=value …]",
+        help = "run a recipe; thole run RECIPE help lists its parameters", call = run_recipe },
     { name = "help", words = "help [TOPIC]", help = "this, or a topic", call = show_help },
     { name = "version", words = "version", help = "the version of Thole", call = show_version },
 }

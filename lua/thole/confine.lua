@@ -1,8 +1,9 @@
 --- The confined world of a recipe: what it sees, reads and writes.
 --
--- A recipe gets tables of its own in place of the standard ones, so that nothing it changes reaches the code
--- around it, and functions that cannot do harm in place of those that can. This limits what a careless or hostile
--- recipe does. It is no guarantee: memory and time are not limited, and Lua or a library may have faults.
+-- A recipe gets tables of its own in place of the standard ones, so that nothing it changes reaches the
+-- code around it, and functions that cannot do harm in place of those that can. This limits what a careless
+-- or hostile recipe does. It is no guarantee: memory and time are not limited, and Lua or a library may have
+-- faults.
 
 local nearest = require "thole.nearest"
 
@@ -13,14 +14,17 @@ local io_open, io_lines, load_text = io.open, io.lines, load
 local real_require, string_mt = require, getmetatable("")
 
 -- Standard functions that are given as they are.
-local PLAIN = { "assert", "error", "ipairs", "next", "pairs", "pcall", "print", "rawequal", "rawget", "rawlen", "rawset",
-    "select", "tonumber", "tostring", "type", "warn", "xpcall", "_VERSION" }
+local PLAIN = { "assert", "error", "ipairs", "next", "pairs", "pcall", "print", "rawequal", "rawget",
+    "rawlen", "rawset", "select", "tonumber", "tostring", "type", "warn", "xpcall", "_VERSION" }
 local PLAIN_OS = { "clock", "date", "difftime", "time" }
 local PLAIN_IO = { "read", "stderr", "stdin", "stdout", "type", "write" }
 local COLLECT = { collect = true, count = true, step = true }
 
 -- Parts of the command itself and the C functions below the Lua half, which are not for recipes.
-local HIDDEN = { ["thole.command"] = true, ["thole.confine"] = true, ["thole.host"] = true, ["thole.native"] = true }
+local HIDDEN = {
+    ["thole.command"] = true, ["thole.confine"] = true, ["thole.host"] = true, ["thole.native"] = true,
+}
+local LIBRARIES = { "coroutine", "io", "math", "os", "string", "table", "utf8" }
 local CLOSED = { debug = true, package = true, ffi = true }
 
 local function copy(from, names)
@@ -61,8 +65,8 @@ confine.split = split
 -- Paths.
 
 --- What may be read and written.
--- host: functions of the command; own: resolved folder of the recipe; out: resolved folder for outputs; given: values
--- by name from the command line; free: true lifts all refusals.
+-- host: functions of the command; own: resolved folder of the recipe; out: resolved folder for outputs;
+-- given: values by name from the command line; free: true lifts all refusals.
 -- Returns gate(path, "read"|"write"): the path to use, or nil and what is wrong.
 function confine.gate(host, own, out, given, free)
     local folders, files = { own }, {}
@@ -120,7 +124,8 @@ function confine.gate(host, own, out, given, free)
             end
         end
         -- The same for what is not there: a recipe cannot find out what there is.
-        return nil, ('"%s" is not for this recipe to read: give its path as name=value, or run with --trust'):format(path)
+        return nil, ('"%s" is not for this recipe to read: give its path as name=value, or run with --trust')
+            :format(path)
     end
 
     local function may_write(path)
@@ -128,8 +133,8 @@ function confine.gate(host, own, out, given, free)
         if not resolved then
             return nil, ('cannot write "%s": %s'):format(path, why)
         elseif resolved ~= target and not within(folder, out) then
-            return nil, ('"%s" is outside of the folder for outputs, "%s": name another with --out, or run with --trust')
-                :format(path, out)
+            return nil, ('"%s" is outside of the folder for outputs, "%s": name another with --out, '
+                .. "or run with --trust"):format(path, out)
         elseif host.kind(resolved, "link") == "link" then
             return nil, ('"%s" is a link: write to a file of its own'):format(path)
         end
@@ -165,7 +170,8 @@ end
 local function confined_collect(what, ...)
     what = what == nil and "collect" or what
     if not COLLECT[what] then
-        error(('collectgarbage "%s" is not for recipes: known are collect, count, step'):format(tostring(what)), 2)
+        error(('collectgarbage "%s" is not for recipes: known are collect, count, step')
+            :format(tostring(what)), 2)
     end
     return collectgarbage(what, ...)
 end
@@ -260,7 +266,7 @@ end
 -- require: thole, the standard libraries as this recipe has them, and Lua files beside the recipe.
 local function add_require(env, host, own, shown)
     local loaded = { _G = env }
-    for _, name in ipairs { "coroutine", "io", "math", "os", "string", "table", "utf8" } do
+    for _, name in ipairs(LIBRARIES) do
         loaded[name] = env[name]
     end
     local loading = {}
@@ -288,14 +294,17 @@ local function add_require(env, host, own, shown)
             loaded[name] = module
             return module
         elseif CLOSED[name] or HIDDEN[name] then
-            error(('module "%s" is not for recipes: run with --trust if this recipe needs it'):format(name), 2)
+            error(('module "%s" is not for recipes: run with --trust if this recipe needs it')
+                :format(name), 2)
         elseif loading[name] then
-            error(('module "%s" is required while it is being loaded: let modules not need each other'):format(name), 2)
+            error(('module "%s" is required while it is being loaded: let modules not need each other')
+                :format(name), 2)
         end
         local path = name:find("^[%w_%-]+[%w_%-%.]*$") and not name:find("..", 1, true) and find(name)
         if not path then
-            local known = nearest.name(name, { "thole", "coroutine", "io", "math", "os", "string", "table", "utf8" })
-            error(('no module "%s" in the recipe\'s folder: %s'):format(name, known and ('did you mean "%s"?'):format(known)
+            local known = nearest.name(name, { "thole", table.unpack(LIBRARIES) })
+            error(('no module "%s" in the recipe\'s folder: %s'):format(name,
+                known and ('did you mean "%s"?'):format(known)
                 or "only thole and Lua files beside the recipe can be required"), 2)
         end
         local f, why = host.load(path, env)
@@ -312,7 +321,8 @@ end
 
 ---------------------------------------------------------------------------------------------------
 
--- What the code around recipes does not need is taken away from it too, so that a fault there gives nothing away.
+-- What the code around recipes does not need is taken away from it too: a fault there then gives nothing
+-- away.
 local function strip_globals()
     for _, name in ipairs { "input", "lines", "open", "output", "popen", "tmpfile" } do
         io[name] = nil

@@ -129,4 +129,7 @@ local function description(path)
     return table.concat(lines, "\n")
 end
 
-return { description = description, show = show, show_range = show_range, example = example, example_line = example_line, text = help_text }
+return {
+    description = description, show = show, show_range = show_range,
+    example = example, example_line = example_line, text = help_text,
+}

@@ -2,8 +2,8 @@
 
 local nearest = require "thole.nearest"
 
-local SECONDS_UNITS = { "ns", "us", "ms", "s", "sec", "second", "seconds", "min", "minute", "minutes", "h", "hour",
-    "hours", "d", "day", "days", "w", "week", "weeks" }
+local SECONDS_UNITS = { "ns", "us", "ms", "s", "sec", "second", "seconds", "min", "minute", "minutes", "h",
+    "hour", "hours", "d", "day", "days", "w", "week", "weeks" }
 local is_unit = {}
 for _, unit in ipairs(SECONDS_UNITS) do
     is_unit[unit] = true
@@ -128,7 +128,8 @@ local function items_kind(list)
     return #list > 0 and (numbers == #list and "number" or texts == #list and "text") or "any"
 end
 
---- The type that a default shows. Durations are told from other texts by their units, so that "20 minuts" is refused at once.
+--- The type that a default shows. Durations are told from other texts by their units, so that "20 minuts"
+-- is refused at once.
 local function inferred(default)
     if type(default) == "string" then
         return default:find("^%d") and default:find("%a") and to_duration(default) and "duration" or "text"

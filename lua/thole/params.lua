@@ -53,10 +53,12 @@ local function chosen(param, value)
         names[i] = show(allowed)
     end
     local near = nearest.name(show(value), names)
-    return nil, ("is not one of %s%s"):format(table.concat(names, ", "), near and (': did you mean "%s"?'):format(near) or "")
+    return nil, ("is not one of %s%s"):format(table.concat(names, ", "),
+        near and (': did you mean "%s"?'):format(near) or "")
 end
 
--- The value after the checks of one_of, min and max, of each item where it is a list; or nil and what is wrong.
+-- The value after the checks of one_of, min and max, of each item where it is a list; or nil and what is
+-- wrong.
 local function allowed(param, value)
     if type(value) ~= "table" then
         local choice, why = chosen(param, value)
@@ -85,13 +87,15 @@ local function check_default(param)
         if type(text) ~= "string" or not kinds.is_duration(text) then
             author('the default of parameter "%s" is not a duration: write for example "20 min"', name)
         end
-    elseif not param.one_of
-        and (type(default) ~= types[param.type].lua or (param.type == "integer" and not math.tointeger(default))) then
-        author('the default of parameter "%s" is not of type %s: change the default or the type', name, param.type)
+    elseif not param.one_of and (type(default) ~= types[param.type].lua
+        or (param.type == "integer" and not math.tointeger(default))) then
+        author('the default of parameter "%s" is not of type %s: change the default or the type', name,
+            param.type)
     end
     local value, why = allowed(param, default)
     if value == nil then
-        author('the default of parameter "%s", "%s", %s: change the default or what is allowed', name, show(default), why)
+        author('the default of parameter "%s", "%s", %s: change the default or what is allowed', name,
+            show(default), why)
     end
 end
 
@@ -116,9 +120,11 @@ local function declared(name, spec)
     for key in pairs(spec) do
         if key ~= 1 and not is_spec_key[key] then
             if math.type(key) == "integer" then
-                author('parameter "%s" has more than one default: write a list as { { … }, help = … }', name)
+                author('parameter "%s" has more than one default: write a list as { { … }, help = … }',
+                    name)
             end
-            author('"%s" says nothing about parameter "%s": %s', tostring(key), name, nearest.hint(tostring(key), SPEC_KEYS))
+            author('"%s" says nothing about parameter "%s": %s', tostring(key), name,
+                nearest.hint(tostring(key), SPEC_KEYS))
         end
     end
     local default = spec[1]
@@ -129,7 +135,8 @@ local function declared(name, spec)
     local param = { name = name, help = spec.help, one_of = spec.one_of, min = spec.min, max = spec.max,
         needed = is_needed, type = spec.type or kinds.inferred(default) }
     if not types[param.type] then
-        author('"%s" is not a type of parameter: %s', tostring(param.type), nearest.hint(tostring(param.type), kinds.names))
+        author('"%s" is not a type of parameter: %s', tostring(param.type),
+            nearest.hint(tostring(param.type), kinds.names))
     elseif param.one_of ~= nil and (type(param.one_of) ~= "table" or #param.one_of == 0) then
         author('one_of of parameter "%s" is not a list with items', name)
     end
@@ -203,7 +210,8 @@ local function value_of(param, text)
         value, why = types[param.type].from(text, param)
     end
     if value == nil then
-        local cure = why:find("?", 1, true) and "" or (": give %s, for example %s"):format(types[param.type].want, help.example(param))
+        local cure = why:find("?", 1, true) and ""
+            or (": give %s, for example %s"):format(types[param.type].want, help.example(param))
         user('%s="%s" %s%s', param.name, text, why, cure)
     end
     value, why = allowed(param, value)
@@ -241,7 +249,8 @@ local function guarded(result, params, order)
     return setmetatable(result, {
         __index = function(_, name)
             if not params[name] then
-                error(('no parameter "%s": %s'):format(tostring(name), nearest.hint(tostring(name), order) or "none is declared"), 2)
+                error(('no parameter "%s": %s'):format(tostring(name),
+                    nearest.hint(tostring(name), order) or "none is declared"), 2)
             end
         end,
     })
@@ -273,9 +282,10 @@ local function read(run, specs)
 end
 
 --- Declare the recipe's parameters and return their values.
--- Each is name = default, thole.needed, or { default or thole.needed, help =, type =, one_of =, min =, max = };
--- types are text, file, number, integer, boolean, duration and list. Without a type it follows from the default:
--- a number's, a boolean's, a list's, a duration's ("20 min") or a text's. { type = … } alone has no default: nil.
+-- Each is name = default, name = thole.needed, or name = { default or thole.needed, help =, type =, one_of =,
+-- min =, max = }; types are text, file, number, integer, boolean, duration and list. Without a type it
+-- follows from the default: a number's, a boolean's, a list's, a duration's ("20 min") or a text's.
+-- { type = … } alone has no default: nil.
 local function params(specs)
     local run = package.loaded["thole.host"] or stock_run()
     if run.declared then
@@ -296,4 +306,6 @@ local function params(specs)
     error(result, 0)
 end
 
-return setmetatable({ needed = needed, params = params }, { __call = function(_, specs) return params(specs) end })
+return setmetatable({ needed = needed, params = params }, {
+    __call = function(_, specs) return params(specs) end,
+})
