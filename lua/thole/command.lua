@@ -198,9 +198,15 @@ local function no_parameters(run)
     return param_help.text(run, {}, {})
 end
 
--- With help asked for, the recipe runs only up to thole.params. One that reads or writes before it has none.
-local function closed_gate(host, run)
-    return function()
+-- With help asked for, the recipe runs only up to thole.params. One that reads or writes before it, other than
+-- in its own folder, has none.
+local function closed_gate(host, run, own, out)
+    local own_gate = confine.gate(host, own, out, {}, false)
+    return function(path, mode)
+        local allowed = mode == "read" and path ~= "-" and own_gate(path, mode)
+        if allowed then
+            return allowed
+        end
         print(no_parameters(run))
         host.finish(DONE)
     end
@@ -222,7 +228,7 @@ local function prepare(host, recipe, words, options)
     -- Names of chunks that begin with "thole/" are those of the Lua half.
     local path = recipe:find("^thole/") and "./" .. recipe or recipe
     local shown = path:match("^.*/") or ""
-    local gate = run.asks_help and closed_gate(host, run)
+    local gate = run.asks_help and closed_gate(host, run, own, out)
         or confine.gate(host, own, out, values_given(words), options.trust)
     host.gate(gate)
     local f

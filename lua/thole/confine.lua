@@ -132,7 +132,9 @@ function confine.gate(host, own, out, given, free)
         local resolved, why, folder = resolve_target(path)
         if not resolved then
             return nil, ('cannot write "%s": %s'):format(path, why)
-        elseif resolved ~= target and not within(folder, out) then
+        elseif resolved == target then
+            return resolved -- named by the user, even when it is a link or a device
+        elseif not within(folder, out) then
             return nil, ('"%s" is outside of the folder for outputs, "%s": name another with --out, '
                 .. "or run with --trust"):format(path, out)
         elseif host.kind(resolved, "link") == "link" then
