@@ -167,7 +167,8 @@ thole_parse tk_iso8601_scan(const char *text, size_t length, tk_written *out) {
     if (clock == THOLE_PARSE_RANGE || offset == THOLE_PARSE_RANGE || month < 1 || month > 12 || day < 1 ||
         day > days_in_month(year, month))
         return THOLE_PARSE_RANGE;
-    w.seconds = thole_days_from_date(year, month, day) * DAY + of_day;
+    w.midnight = thole_days_from_date(year, month, day) * DAY;
+    w.seconds = w.midnight + of_day;
     *out = w;
     return clock; /* perhaps THOLE_PARSE_DIGITS */
 }

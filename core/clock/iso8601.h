@@ -6,6 +6,7 @@
 
 typedef struct tk_written {
     int64_t seconds;    /* since 1970-01-01T00:00, as the clock on the wall shows it */
+    int64_t midnight;   /* the same, at the beginning of the date written */
     int32_t nanos;      /* 0 .. 999,999,999 */
     bool has_offset;    /* whether an offset or Z is written */
     int32_t offset;     /* seconds east */

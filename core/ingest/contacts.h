@@ -27,6 +27,7 @@ typedef enum thole_time_form {
 /* Zero-initialise, then set what is wanted.
  * from, to, start: required. finish or duration (a duration as in
  *   thole_parse_duration; bare numbers in the clock's unit), or neither: contacts.
+ * finish_may_miss: a finish column that the header does not name is as if not given.
  * linger: ticks added to the finish of contacts (start = finish); 0 leaves them instants.
  * separator: ',', ';', '\t', or 0 to find it.
  * headless: there is no header line; columns by number only.
@@ -36,6 +37,7 @@ typedef enum thole_time_form {
  * take: names of extra columns to keep as attributes (take_count = SIZE_MAX, the default with take NULL and 0: all). */
 typedef struct thole_contacts_options {
     thole_column_ref from, to, start, finish, duration;
+    bool finish_may_miss;
     int64_t linger;
     char separator;
     bool headless;
