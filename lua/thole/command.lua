@@ -282,7 +282,7 @@ local function run_recipe(host, words)
     elseif not ok then
         say(host, cause(text, place))
         if trace then
-            host.say(trace)
+            host.say((trace:gsub("\n%s*%[C%]: in %a+ '[%w_.]*call'\n%s*thole/command%.lua:.*$", "")))
         end
         return FAILED
     elseif run.asks_help and not run.declared then

@@ -137,6 +137,9 @@ function confine.gate(host, own, out, given, free)
         elseif not within(folder, out) then
             return nil, ('"%s" is outside of the folder for outputs, "%s": name another with --out, '
                 .. "or run with --trust"):format(path, out)
+        elseif resolved:sub(out == "/" and 1 or #out + 1):find("/.", 1, true) then
+            -- Hidden files steer shells, editors and version control.
+            return nil, ('"%s" would be hidden: write to a name without a dot in front'):format(path)
         elseif host.kind(resolved, "link") == "link" then
             return nil, ('"%s" is a link: write to a file of its own'):format(path)
         end

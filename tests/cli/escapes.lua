@@ -58,6 +58,8 @@ local ATTEMPTS = {
     { "write over the input", 'require("thole").write("../given/data.csv", "x")', says = OUTSIDE },
     { "write a report outside", 'require("thole").report("../ran.html", {})', says = OUTSIDE },
     { "write to a folder", 'require("thole").write("..", "x")', says = "is not the name of a file$" },
+    { "write a hidden file", 'require("thole").write(".profile", "x")', says = "would be hidden" },
+    { "write in a hidden folder", 'require("thole").write(".git/config", "x")', says = "would be hidden" },
     { "write by io.output", 'io.output("out/ran")', says = NIL_CALL },
     { "write by a temporary file", 'io.tmpfile()', says = NIL_CALL },
 
@@ -131,7 +133,7 @@ local ATTEMPTS = {
 local STATE = "find . -path ./out -prune -o -type f -exec cksum {} + -o -print | sort; find . -name 'ran*'"
 
 local function lay_out(place)
-    for _, name in ipairs { "home", "given", "given2", "secret", "out" } do
+    for _, name in ipairs { "home", "given", "given2", "secret", "out/.git" } do
         shell.make_folders(place .. "/" .. name)
     end
     shell.write(place .. "/secret/word.txt", SECRET .. "\n")
