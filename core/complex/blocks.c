@@ -9,7 +9,7 @@ typedef struct pace {
 } pace;
 static const pace paces[] = {{0.3, 3000, 3}, {1.0, 1000, 1}, {1e300, 1, 0.2}};
 
-static bool choose_cuts(const tc_stays *stays, thole_join join, double density, tc_blocks *out) {
+static bool choose_cuts(const tc_stays *stays, thole_join join, double density, uint32_t also, tc_blocks *out) {
     const pace *p = paces;
     while (density > p->most_density)
         p++;
@@ -29,7 +29,8 @@ static bool choose_cuts(const tc_stays *stays, thole_join join, double density, 
         alive += begins[t];
         alive -= ends[t];
         fresh += begins[t];
-        if ((t & 1) == parity && fresh >= p->least_new && (double)fresh >= p->times_inherited * (double)inherited && t + 1 < positions) {
+        bool enough = (t & 1) == parity && fresh >= p->least_new && (double)fresh >= p->times_inherited * (double)inherited;
+        if ((enough || t == also) && t + 1 < positions) {
             fine = TB_VEC_PUSH(out->memory, &out->cut, t);
             inherited = alive;
             fresh = 0;
@@ -83,15 +84,21 @@ static bool hand_out(const tc_stays *stays, tc_blocks *out) {
     return out->stay != NULL;
 }
 
-thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, double density, tc_blocks *out,
-                          thole_error *error) {
+thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, double density, uint32_t also,
+                          tc_blocks *out, thole_error *error) {
     *out = (tc_blocks){.memory = stays->memory};
     bool fine = TB_VEC_PUSH(out->memory, &out->cut, 0);
     if (length == 0)
-        fine = fine && choose_cuts(stays, join, density, out);
+        fine = fine && choose_cuts(stays, join, density, also, out);
     else
-        for (uint64_t t = length; fine && t + 1 < stays->positions; t += length)
-            fine = TB_VEC_PUSH(out->memory, &out->cut, (uint32_t)t);
+        for (uint64_t t = length, before = 0; fine && t + 1 < stays->positions; before = t, t += length) {
+            if (before < also && also < t)
+                fine = TB_VEC_PUSH(out->memory, &out->cut, also);
+            fine = fine && TB_VEC_PUSH(out->memory, &out->cut, (uint32_t)t);
+        }
+    uint32_t behind = out->cut.n > 0 ? out->cut.at[out->cut.n - 1] : 0;
+    if (fine && behind < also && also < stays->positions - 1)
+        fine = TB_VEC_PUSH(out->memory, &out->cut, also);
     fine = fine && TB_VEC_PUSH(out->memory, &out->cut, stays->positions - 1);
     fine = fine && hand_out(stays, out);
     if (!fine) {

@@ -16,9 +16,9 @@ typedef struct tc_blocks {
 /* length: arrows a block spans, or 0 to choose by `density` (cells of dimension 2 and up for each link at a
  * position): a block is closed when the stays that begin in it outnumber those it inherits, since inherited ones
  * are work done again, and the sooner the denser the complex; a very dense one gets a block for each join, in which no
- * cell comes after another has gone. */
-thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, double density, tc_blocks *out,
-                          thole_error *error);
+ * cell comes after another has gone. also: a position to cut at besides, or UINT32_MAX. */
+thole_status tc_blocks_of(const tc_stays *stays, thole_join join, uint32_t length, double density, uint32_t also,
+                          tc_blocks *out, thole_error *error);
 void tc_blocks_clear(tc_blocks *blocks);
 static inline size_t tc_blocks_count(const tc_blocks *blocks) { return blocks->cut.n - 1; }
 

@@ -41,6 +41,14 @@ typedef struct tc_work {
 thole_status tc_block_make(tc_work *work, const tc_stays *stays, const tc_blocks *blocks, size_t k,
                            const thole_zigzag_options *options, int top, tc_block *out);
 
+/* One position as a block of its own; in the arena. */
+typedef struct tc_position {
+    tc_blocks blocks; /* not to be cleared */
+    uint32_t cut[2];
+    uint64_t start[2];
+} tc_position;
+thole_status tc_position_of(tc_work *work, const tc_stays *stays, uint32_t position, tc_position *out);
+
 /* Cells of dimension 2 and up for each link, at a few positions: 0 where top < 2. What it makes is given back. */
 thole_status tc_density(tc_work *work, const tc_stays *stays, const thole_zigzag_options *options, int top, double *out);
 

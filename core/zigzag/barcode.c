@@ -22,12 +22,11 @@ typedef struct keyed {
     uint32_t first, last, dim, kind;
 } keyed;
 
-bool tz_barcode_sort(thole_barcode *barcode) {
+static bool sort_bars(thole_barcode *barcode) {
     /* Kinds in the order of their names. */
     static const uint8_t place[] = {[THOLE_CLOSED_OPEN] = 1, [THOLE_OPEN_CLOSED] = 2, [THOLE_CLOSED_CLOSED] = 0, [THOLE_OPEN_OPEN] = 3};
     static const uint8_t kind[] = {THOLE_CLOSED_CLOSED, THOLE_CLOSED_OPEN, THOLE_OPEN_CLOSED, THOLE_OPEN_OPEN};
     size_t n = barcode->bars.n;
-    TB_VEC_TRIM(barcode->memory, &barcode->bars);
     if (n == 0)
         return true;
     keyed *list = tb_resize(barcode->memory, NULL, 0, 2 * n, sizeof *list);
@@ -44,6 +43,21 @@ bool tz_barcode_sort(thole_barcode *barcode) {
         barcode->bars.at[i] = (thole_bar){list[i].first, list[i].last, (uint8_t)list[i].dim, kind[list[i].kind]};
     tb_free(barcode->memory, list, 2 * n, sizeof *list);
     return true;
+}
+
+bool tz_barcode_take(thole_barcode *barcode, const tz_bars *bars, const tz_value *rest) {
+    size_t n = bars->n;
+    for (int p = 0; p < rest->dims; p++)
+        n += rest->dim[p].bars.n;
+    if (!TB_VEC_RESERVE(barcode->memory, &barcode->bars, n))
+        return false;
+    if (bars->n > 0)
+        memcpy(barcode->bars.at, bars->at, bars->n * sizeof *bars->at);
+    barcode->bars.n = bars->n;
+    for (int p = 0; p < rest->dims; p++)
+        for (size_t i = 0; i < rest->dim[p].bars.n; i++)
+            barcode->bars.at[barcode->bars.n++] = rest->dim[p].bars.at[i];
+    return sort_bars(barcode);
 }
 
 thole_barcode *thole_barcode_retain(thole_barcode *barcode) {

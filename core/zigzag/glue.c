@@ -275,37 +275,92 @@ static bool pass_bars(thole_memory *memory, const tz_span *from, tz_span *to) {
     return true;
 }
 
-static thole_status glue_dimension(seam *s, int p, tz_span *out, thole_error *error) {
+/* Both bases in the same coordinates, the left one matched with the right. */
+static thole_status match_bases(seam *s, thole_error *error) {
     s->n = (uint32_t)s->a->right.bar.n;
     if (s->n != s->b->left.bar.n)
         return mismatch(error);
-    bool fine = pass_bars(s->memory, s->a, out) && pass_bars(s->memory, s->b, out) &&
-                pass_through(s->memory, &s->a->left, &out->left) && pass_through(s->memory, &s->b->right, &out->right);
-    if (!fine)
-        return tb_refused(s->memory, error, "gluing blocks of time");
     if (s->n == 0)
         return THOLE_OK;
     s->a_order = order_of(s, &s->a->right, TZ_BY_DELETION);
     s->b_order = order_of(s, &s->b->left, TZ_BY_ADDITION);
     s->b_owner = TB_FILL(&s->arena, uint32_t, s->n, 0xFF);
     s->m_owner = TB_FILL(&s->arena, uint32_t, s->n, 0xFF);
+    uint32_t many;
     if (s->a_order == NULL || s->b_order == NULL || s->b_owner == NULL || s->m_owner == NULL ||
         !matrix_make(s, s->n, &s->b_columns) || !matrix_make(s, s->n, &s->b_made_of) ||
         !matrix_make(s, s->n, &s->m_columns) || !matrix_make(s, s->n, &s->m_made_of) ||
         !tz_bits_make(&s->arena, s->n, &s->work) || !tz_bits_make(&s->arena, s->n, &s->with) ||
-        !tz_bits_make(&s->arena, s->n, &s->image))
-        return tb_refused(s->memory, error, "gluing blocks of time");
-    uint32_t many;
-    if (!number_coordinates(s, &s->b->left, &many))
+        !tz_bits_make(&s->arena, s->n, &s->image) || !number_coordinates(s, &s->b->left, &many))
         return tb_refused(s->memory, error, "gluing blocks of time");
     if (many != s->n)
         return mismatch(error);
     thole_status status = triangular(s, error);
-    if (status == THOLE_OK)
-        status = match(s, error);
-    if (status == THOLE_OK && !write_bars(s, p, out))
+    return status == THOLE_OK ? match(s, error) : status;
+}
+
+static void seam_clear(seam *s) {
+    TB_VEC_CLEAR(s->memory, &s->b_columns.item);
+    TB_VEC_CLEAR(s->memory, &s->b_made_of.item);
+    TB_VEC_CLEAR(s->memory, &s->m_columns.item);
+    TB_VEC_CLEAR(s->memory, &s->m_made_of.item);
+    tb_arena_clear(&s->arena);
+}
+
+static seam seam_of(thole_context *context, const tz_value *left, const tz_value *right, int p) {
+    seam s = {.context = context, .memory = context->memory, .a = &left->dim[p], .b = &right->dim[p]};
+    s.arena.memory = context->memory;
+    return s;
+}
+
+static thole_status glue_dimension(seam *s, int p, tz_span *out, thole_error *error) {
+    bool fine = pass_bars(s->memory, s->a, out) && pass_bars(s->memory, s->b, out) &&
+                pass_through(s->memory, &s->a->left, &out->left) && pass_through(s->memory, &s->b->right, &out->right);
+    thole_status status = fine ? match_bases(s, error) : THOLE_OK;
+    if (status == THOLE_OK && !(fine && (s->n == 0 || write_bars(s, p, out))))
         status = tb_refused(s->memory, error, "gluing blocks of time");
     return status;
+}
+
+/* Class i of the matched basis, as coordinates, ascending. */
+static bool write_class(seam *s, uint32_t i, const uint32_t *coordinate, tz_classes *out) {
+    for (uint32_t k = 0; k < s->m_columns.length[i]; k++)
+        matrix_add(&s->b_columns, s->m_columns.item.at[s->m_columns.start[i] + k], &s->work);
+    uint32_t end = s->m_columns.item.at[s->m_columns.start[i] + s->m_columns.length[i] - 1];
+    tz_class class = {s->a->right.bar.at[s->a_order[i]], s->b->left.bar.at[s->b_order[end]], out->item.n, 0};
+    for (uint32_t r; (r = tz_bits_lowest(&s->work)) != TZ_EMPTY; class.length++) {
+        tz_bits_toggle(&s->work, r);
+        if (!TB_VEC_PUSH(s->memory, &out->item, coordinate[r]))
+            return false;
+    }
+    return TB_VEC_PUSH(s->memory, &out->list, class);
+}
+
+thole_status tz_match(thole_context *context, const tz_value *left, const tz_value *right, int p, tz_classes *out,
+                      thole_error *error) {
+    *out = (tz_classes){.memory = context->memory};
+    if (left->last != right->first || p >= left->dims || p >= right->dims)
+        return mismatch(error);
+    seam s = seam_of(context, left, right, p);
+    thole_status status = match_bases(&s, error);
+    uint32_t *coordinate = status == THOLE_OK ? TB_TAKE(&s.arena, uint32_t, s.n) : NULL;
+    bool fine = coordinate != NULL;
+    for (size_t i = 0; fine && s.n > 0 && i < s.bound; i++)
+        if (s.place[i] != TC_NONE)
+            coordinate[s.place[i]] = (uint32_t)i;
+    for (uint32_t i = 0; fine && i < s.n; i++)
+        fine = write_class(&s, i, coordinate, out);
+    if (status == THOLE_OK && !fine)
+        status = tb_refused(context->memory, error, "the bars of a position");
+    seam_clear(&s);
+    return status;
+}
+
+void tz_classes_clear(tz_classes *classes) {
+    if (classes->memory == NULL)
+        return;
+    TB_VEC_CLEAR(classes->memory, &classes->list);
+    TB_VEC_CLEAR(classes->memory, &classes->item);
 }
 
 thole_status tz_glue(thole_context *context, const tz_value *left, const tz_value *right, tz_value *out, thole_error *error) {
@@ -316,14 +371,9 @@ thole_status tz_glue(thole_context *context, const tz_value *left, const tz_valu
         out->cells[d] = left->cells[d] + right->cells[d];
     thole_status status = THOLE_OK;
     for (int p = 0; status == THOLE_OK && p < left->dims; p++) {
-        seam s = {.context = context, .memory = context->memory, .a = &left->dim[p], .b = &right->dim[p]};
-        s.arena.memory = context->memory;
+        seam s = seam_of(context, left, right, p);
         status = glue_dimension(&s, p, &out->dim[p], error);
-        TB_VEC_CLEAR(s.memory, &s.b_columns.item);
-        TB_VEC_CLEAR(s.memory, &s.b_made_of.item);
-        TB_VEC_CLEAR(s.memory, &s.m_columns.item);
-        TB_VEC_CLEAR(s.memory, &s.m_made_of.item);
-        tb_arena_clear(&s.arena);
+        seam_clear(&s);
     }
     if (status != THOLE_OK)
         tz_value_clear(out);

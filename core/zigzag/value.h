@@ -60,4 +60,23 @@ thole_status tz_glue(thole_context *context, const tz_value *left, const tz_valu
 
 void tz_value_clear(tz_value *value);
 
+/* One bar that lives at the shared position of two stretches: how it began and ends, and its class there, as
+ * coordinates. The classes of all such bars are a basis that fits both sides. */
+typedef struct tz_class {
+    tz_touch birth, death;
+    size_t start; /* into item */
+    size_t length;
+} tz_class;
+
+typedef struct tz_classes {
+    thole_memory *memory;
+    TB_VEC(tz_class) list;
+    TB_VEC(uint32_t) item;
+} tz_classes;
+
+/* The bars of dimension p at the shared position. Clear *out with tz_classes_clear, after a failure too. */
+thole_status tz_match(thole_context *context, const tz_value *left, const tz_value *right, int p, tz_classes *out,
+                      thole_error *error);
+void tz_classes_clear(tz_classes *classes);
+
 #endif
