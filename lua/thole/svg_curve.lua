@@ -40,9 +40,11 @@ local function columns(numbers, shares, scale, most, top)
         end
         if value > 0 and right > left then
             local height = BODY * value / most
-            local width = scale:place(right) - scale:place(left)
+            -- From rounded end to rounded end, so that neighbours meet without a hair between them.
+            local x = math.floor(scale:place(left) * 1e5 + 0.5) / 1e5
+            local width = math.floor(scale:place(right) * 1e5 + 0.5) / 1e5 - x
             out[#out + 1] = ('<rect class="step" x="%s" y="%s" width="%s" height="%s"/>\n'):format(
-                scale:x(left), svg.decimal(top + BODY - height, 1), svg.percent(width), svg.decimal(height, 1))
+                svg.percent(x), svg.decimal(top + BODY - height, 1), svg.percent(width), svg.decimal(height, 1))
         end
         i = i + 1
     end

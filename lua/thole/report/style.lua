@@ -41,7 +41,7 @@ figure h3{margin-top:0}
 .chart svg{display:block;overflow:visible}
 .chart svg.square{width:100%;aspect-ratio:1}
 .square-box{max-width:44rem}
-.note{font-size:.9rem;color:var(--soft)}
+.note{font-size:.9rem;color:var(--soft);margin:.75rem 0}
 .scroll{overflow-x:auto}
 table{border-collapse:collapse;font-variant-numeric:tabular-nums;width:100%;max-width:64rem}
 th,td{text-align:left;padding:.35rem 1.25rem .35rem 0;border-bottom:1px solid var(--rule);vertical-align:top}
