@@ -13,9 +13,9 @@ local escape = require "thole.escape"
 local svg = {}
 
 local LIGHT = { ground = "#fbfaf5", ink = "#1c2a33", soft = "#56656e", rule = "#dcd8cb", night = "#f1eee3",
-        "#0c6470", "#b3501a", "#6b3a8c", "#4d6410" }
+        "#0c6470", "#b3501a", "#a95fc4", "#2b3806" }
 local DARK = { ground = "#11181d", ink = "#e8e4d9", soft = "#a0adb3", rule = "#2d3a42", night = "#172027",
-        "#62c4c9", "#f2995f", "#c39ae6", "#adc765" }
+        "#62c4c9", "#f2995f", "#a06be0", "#eaf3b4" }
 svg.light, svg.dark = LIGHT, DARK
 
 -- The colour class of a dimension; dimensions from 4 on share the last one.

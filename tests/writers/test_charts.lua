@@ -218,4 +218,69 @@ for _ = 1, 10 * check.cases do
     check.near(area / (100 * 92) * most, wanted / span, 0.01 * most, "area of a curve")
 end
 
+-- ---- colours ------------------------------------------------------------------------------------
+
+-- Hues of dimensions stay apart for readers who see red, green or blue differently. The matrices for full
+-- protanopia, deuteranopia and tritanopia are those of Machado, Oliveira and Fernandes (IEEE Trans. Vis. Comput.
+-- Graph. 15, 2009), from memory; distances are CIE 1976 ones in L*a*b*. 20 is several times what is just seen; common
+-- practice, no source. Contrast is that of WCAG 2.1: at least 3 for graphics (1.4.11), 4.5 for text (1.4.3).
+local SIGHTS = {
+    { 1, 0, 0, 0, 1, 0, 0, 0, 1 },
+    { 0.152286, 1.052583, -0.204868, 0.114503, 0.786281, 0.099216, -0.003882, -0.048116, 1.051998 },
+    { 0.367322, 0.860646, -0.227968, 0.280085, 0.672501, 0.047413, -0.011820, 0.042940, 0.968881 },
+    { 1.255528, -0.076749, -0.178779, -0.078411, 0.930809, 0.147602, 0.004733, 0.691367, 0.303900 },
+}
+
+local function linear(colour)
+    local rgb = {}
+    for i, hex in ipairs { colour:match("#(%x%x)(%x%x)(%x%x)") } do
+        local c = tonumber(hex, 16) / 255
+        rgb[i] = c <= 0.04045 and c / 12.92 or ((c + 0.055) / 1.055) ^ 2.4
+    end
+    return rgb
+end
+
+local function lab(rgb)
+    local function f(t)
+        t = math.max(t, 0)
+        return t > 0.008856 and t ^ (1 / 3) or 7.787 * t + 16 / 116
+    end
+    local x = f((0.4124 * rgb[1] + 0.3576 * rgb[2] + 0.1805 * rgb[3]) / 0.9505)
+    local y = f(0.2126 * rgb[1] + 0.7152 * rgb[2] + 0.0722 * rgb[3])
+    local z = f((0.0193 * rgb[1] + 0.1192 * rgb[2] + 0.9505 * rgb[3]) / 1.089)
+    return { 116 * y - 16, 500 * (x - y), 200 * (y - z) }
+end
+
+local function contrast(a, b)
+    local function light(colour)
+        local rgb = linear(colour)
+        return 0.2126 * rgb[1] + 0.7152 * rgb[2] + 0.0722 * rgb[3] + 0.05
+    end
+    return math.max(light(a) / light(b), light(b) / light(a))
+end
+
+local svg = require "thole.svg"
+check.near(contrast("#ffffff", "#000000"), 21, 1e-9)
+for scheme, colours in pairs { light = svg.light, dark = svg.dark } do
+    for i, hue in ipairs(colours) do
+        check.truthy(contrast(hue, colours.ground) >= 3, scheme .. ": hue " .. i .. " is faint")
+        for j = i + 1, #colours do
+            for k, m in ipairs(SIGHTS) do
+                local seen = {}
+                for _, colour in ipairs { hue, colours[j] } do
+                    local c = linear(colour)
+                    seen[#seen + 1] = lab { m[1] * c[1] + m[2] * c[2] + m[3] * c[3],
+                        m[4] * c[1] + m[5] * c[2] + m[6] * c[3], m[7] * c[1] + m[8] * c[2] + m[9] * c[3] }
+                end
+                local a, b = seen[1], seen[2]
+                local apart = math.sqrt((a[1] - b[1]) ^ 2 + (a[2] - b[2]) ^ 2 + (a[3] - b[3]) ^ 2)
+                check.truthy(apart >= 20, ("%s: hues %d and %d are %.0f apart for sight %d"):format(scheme, i, j, apart, k))
+            end
+        end
+    end
+    for _, name in ipairs { "ink", "soft" } do
+        check.truthy(contrast(colours[name], colours.ground) >= 4.5, scheme .. ": " .. name .. " is faint")
+    end
+end
+
 check.finish()
