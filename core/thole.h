@@ -24,5 +24,6 @@
 #include "network/windows.h"
 #include "ingest/contacts.h"
 #include "zigzag/zigzag.h"
+#include "zigzag/choose.h"
 
 #endif
