@@ -61,6 +61,22 @@ static int64_t linger(lua_State *L, const tl_options *options, const char *unit)
     return ticks;
 }
 
+/* The columns of links; without a header there are no names to go by. */
+static void columns(lua_State *L, const tl_options *options, thole_contacts_options *out) {
+    out->headless = !tl_option_boolean(L, options, "header", true);
+    out->from = column(L, options, "from", out->headless ? NULL : "from");
+    out->to = column(L, options, "to", out->headless ? NULL : "to");
+    out->start = column(L, options, "start", out->headless ? NULL : "start");
+    out->duration = column(L, options, "duration", NULL);
+    out->finish = column(L, options, "finish", NULL);
+    bool has_end = out->duration.name != NULL || out->duration.number != 0 || out->finish.name != NULL ||
+                   out->finish.number != 0;
+    if (!has_end && !out->headless) {
+        out->finish.name = "finish";
+        out->finish_may_miss = true;
+    }
+}
+
 static int read_contacts(lua_State *L) {
     static const char *const names[] = {"columns", "duration", "faulty", "finish", "from",  "header", "linger",
                                         "separator", "start",  "time",   "to",     "unit", "zone"};
@@ -69,14 +85,7 @@ static int read_contacts(lua_State *L) {
     lua_settop(L, 2);
     tl_options options = tl_options_at(L, 2, OF, sizeof names / sizeof *names, names);
     thole_contacts_options read = {.separator = separator(L, &options)};
-    read.from = column(L, &options, "from", "from");
-    read.to = column(L, &options, "to", "to");
-    read.start = column(L, &options, "start", "start");
-    read.duration = column(L, &options, "duration", NULL);
-    bool has_duration = read.duration.name != NULL || read.duration.number != 0;
-    read.finish = column(L, &options, "finish", has_duration ? NULL : "finish");
-    read.finish_may_miss = tl_option(L, &options, "finish") == LUA_TNIL;
-    read.headless = !tl_option_boolean(L, &options, "header", true);
+    columns(L, &options, &read);
     read.form = (thole_time_form)(1 + tl_option_choice(L, &options, "time", 3, forms, -1));
     read.skip_faulty = tl_option_choice(L, &options, "faulty", 2, faults, 0) == 1;
     read.zone = tl_option_text(L, &options, "zone", NULL);

@@ -114,6 +114,13 @@ static thole_status no_such_name(const ti_header *header, const char *name, cons
                       nearest[0] != '\0' ? ", " : "", list);
 }
 
+bool ti_header_has(const ti_header *header, const char *name) {
+    for (size_t i = 0; header->name != NULL && i < header->n; i++)
+        if (strcmp(header->name[i], name) == 0)
+            return true;
+    return false;
+}
+
 thole_status ti_header_find(const ti_header *header, const char *name, const char *role, thole_column_ref ref, size_t *column,
                             thole_error *error) {
     char quoted[TI_QUOTED_SIZE];

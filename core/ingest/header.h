@@ -23,6 +23,9 @@ void ti_header_clear(ti_header *header);
 thole_status ti_header_find(const ti_header *header, const char *name, const char *role, thole_column_ref ref, size_t *column,
                             thole_error *error);
 
+/* Whether there is a column of that name (not NULL). */
+bool ti_header_has(const ti_header *header, const char *name);
+
 /* The separator among comma, semicolon and tab that a line outside quotes has most of; a comma when it has none. */
 char ti_separator_of(const char *line, size_t length);
 
