@@ -36,7 +36,10 @@ end
 
 local text = slurp(GUIDE)
 local replaced, sections, outputs = {}, 0, 0
-for title, body in (text .. "\n## "):gmatch("(## [^\n]+)(.-)%f[\n]\n%f[#]") do
+local starts = {}
+for at in text:gmatch("\n()## ") do starts[#starts + 1] = at end
+for i, at in ipairs(starts) do
+    local title, body = text:sub(at, (starts[i + 1] or 0) - 1):match("^([^\n]+)(.*)$")
     local code = {}
     for kind, block in body:gmatch("```(%l+)\n(.-)```") do
         if kind == "lua" then
