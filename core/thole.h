@@ -25,5 +25,6 @@
 #include "ingest/contacts.h"
 #include "zigzag/zigzag.h"
 #include "zigzag/choose.h"
+#include "zigzag/carriers.h"
 
 #endif
