@@ -2,7 +2,7 @@
 #include <math.h>
 #include <stdio.h>
 
-#include "base/sort.h"
+#include "network/arrange.h"
 #include "clock/decimal.h"
 #include "network/store.h"
 
@@ -266,38 +266,6 @@ thole_status thole_builder_remark(thole_builder *b, const char *what, uint64_t l
 
 /* ---- finishing ------------------------------------------------------------------- */
 
-/* An event's place in the order of the store, as sortable numbers. */
-typedef struct sort_key {
-    uint64_t start, finish; /* with the sign bit turned, so that they sort as unsigned */
-    uint32_t low, high, row, pad;
-} sort_key;
-
-static sort_key key_of(const thole_event *e, uint32_t row) {
-    const uint64_t sign = UINT64_C(1) << 63;
-    bool turned = e->from > e->to;
-    return (sort_key){(uint64_t)e->start ^ sign, (uint64_t)e->finish ^ sign, turned ? e->to : e->from,
-                      turned ? e->from : e->to, row, 0};
-}
-
-static int in_order(const sort_key *a, const sort_key *b) {
-    if (a->start != b->start)
-        return a->start < b->start ? -1 : 1;
-    if (a->finish != b->finish)
-        return a->finish < b->finish ? -1 : 1;
-    if (a->low != b->low)
-        return a->low < b->low ? -1 : 1;
-    return a->high < b->high ? -1 : a->high > b->high;
-}
-
-static bool is_sorted(const tn_store *s) {
-    for (size_t i = 1; i < s->events.n; i++) {
-        sort_key a = key_of(&s->events.at[i - 1], 0), b = key_of(&s->events.at[i], 0);
-        if (in_order(&a, &b) > 0)
-            return false;
-    }
-    return true;
-}
-
 static void permute_column(tn_column *c, const uint32_t *row, size_t n, void *scratch) {
     size_t item = c->type == THOLE_TEXT ? sizeof *c->text : sizeof *c->integer;
     char *at = c->type == THOLE_TEXT ? (char *)c->text : c->type == THOLE_REAL ? (char *)c->real : (char *)c->integer;
@@ -306,42 +274,25 @@ static void permute_column(tn_column *c, const uint32_t *row, size_t n, void *sc
     memcpy(at, scratch, n * item);
 }
 
-/* Sort events and columns by a stable sort of keys. */
 static bool sort_events(thole_builder *b) {
     tn_store *s = b->store;
     size_t n = s->events.n;
-    if (is_sorted(s))
-        return true;
-    sort_key *keys = tb_resize(b->memory, NULL, 0, 2 * n, sizeof *keys);
-    uint32_t *row = tb_resize(b->memory, NULL, 0, n, sizeof *row);
-    bool fine = keys != NULL && row != NULL;
-    if (fine) {
-        for (size_t i = 0; i < n; i++)
-            keys[i] = key_of(&s->events.at[i], (uint32_t)i);
-        tb_sort_by_u32(keys, keys + n, n, sizeof *keys, offsetof(sort_key, high));
-        tb_sort_by_u32(keys, keys + n, n, sizeof *keys, offsetof(sort_key, low));
-        tb_sort_by_u64(keys, keys + n, n, sizeof *keys, offsetof(sort_key, finish));
-        tb_sort_by_u64(keys, keys + n, n, sizeof *keys, offsetof(sort_key, start));
-        for (size_t i = 0; i < n; i++)
-            row[i] = keys[i].row;
-        thole_event *events = (thole_event *)keys; /* the keys are done with and larger */
-        for (size_t i = 0; i < n; i++)
-            events[i] = s->events.at[row[i]];
-        memcpy(s->events.at, events, n * sizeof *events);
-        for (size_t c = 0; c < s->columns.n; c++)
-            permute_column(&s->columns.at[c], row, n, keys);
-    }
-    tb_free(b->memory, keys, 2 * n, sizeof *keys);
+    uint32_t *row = NULL;
+    if (!tn_arrange(b->memory, s->events.at, n, s->columns.n > 0, &row))
+        return false;
+    void *scratch = row != NULL ? tb_resize(b->memory, NULL, 0, n, sizeof(int64_t)) : NULL;
+    for (size_t c = 0; scratch != NULL && c < s->columns.n; c++)
+        permute_column(&s->columns.at[c], row, n, scratch);
+    bool fine = row == NULL || scratch != NULL;
+    tb_free(b->memory, scratch, n, sizeof(int64_t));
     tb_free(b->memory, row, n, sizeof *row);
     return fine;
 }
 
 /* Equal ones are neighbours now. */
 static void count_repeats(tn_store *s) {
-    for (size_t i = 1; i < s->events.n; i++) {
-        sort_key a = key_of(&s->events.at[i - 1], 0), b = key_of(&s->events.at[i], 0);
-        s->account.repeats += in_order(&a, &b) == 0;
-    }
+    for (size_t i = 1; i < s->events.n; i++)
+        s->account.repeats += tn_event_order(&s->events.at[i - 1], &s->events.at[i]) == 0;
 }
 
 static void trim(thole_builder *b) {
