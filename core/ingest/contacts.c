@@ -7,6 +7,7 @@
 #include "base/names.h"
 #include "ingest/attributes.h"
 #include "ingest/faults.h"
+#include "ingest/recent.h"
 #include "ingest/times.h"
 
 enum { FROM, TO, START, FINISH, DURATION, ROLES };
@@ -29,6 +30,7 @@ typedef struct reader {
     size_t attribute_n, attribute_cap;
     tb_names names; /* of the attributes */
     uint64_t blank_n, blank_line;
+    ti_recent *recent;
 } reader;
 
 /* ---- options ------------------------------------------------------------- */
@@ -85,7 +87,7 @@ static thole_status find_roles(reader *r) {
     for (int role = FROM; role < ROLES; role++) {
         thole_column_ref ref = role_ref(r->options, role);
         r->column[role] = ABSENT;
-        if (!is_given(ref))
+        if (!is_given(ref) || (role == FINISH && r->options->finish_may_miss && !ti_header_has(&r->header, ref.name)))
             continue;
         thole_status status = ti_header_find(&r->header, r->faults.name, ROLE[role], ref, &r->column[role], r->error);
         if (status != THOLE_OK)
@@ -195,6 +197,9 @@ static thole_status settle_form(reader *r, thole_time_form form) {
     memcpy(r->clock.unit, unit, strlen(unit) + 1);
     r->times.form = form;
     r->times.zone = r->clock.zone;
+    r->recent = tb_new(r->context->memory, 1, sizeof *r->recent);
+    if (r->recent == NULL)
+        return tb_refused(r->context->memory, r->error, "the names of nodes");
     thole_status status = thole_builder_open(r->context, &r->clock, &r->builder, r->error);
     if (status != THOLE_OK)
         return status;
@@ -315,9 +320,10 @@ static thole_status read_finish(reader *r, thole_event *event, ti_time *finish, 
 static thole_status store(reader *r, thole_event event) {
     const ti_field *from = field_of(r, FROM), *to = field_of(r, TO);
     bool kept = false;
-    thole_status status = thole_builder_node(r->builder, from->at, from->length, &event.from, r->error);
+    bool in_block = !r->rows.quoted; /* which has a margin */
+    thole_status status = ti_recent_node(r->recent, r->builder, from->at, from->length, in_block, &event.from, r->error);
     if (status == THOLE_OK)
-        status = thole_builder_node(r->builder, to->at, to->length, &event.to, r->error);
+        status = ti_recent_node(r->recent, r->builder, to->at, to->length, in_block, &event.to, r->error);
     if (status == THOLE_OK)
         status = thole_builder_event(r->builder, event, &kept, r->error);
     for (size_t i = 0; i < r->attribute_n && kept && status == THOLE_OK; i++) {
@@ -456,6 +462,7 @@ static thole_status read_source(reader *r, thole_network **out) {
     thole_builder_release(r->builder);
     tb_free(r->context->memory, r->attributes, r->attribute_cap, sizeof *r->attributes);
     tb_names_clear(r->context->memory, &r->names);
+    tb_free(r->context->memory, r->recent, 1, sizeof *r->recent);
     ti_header_clear(&r->header);
     ti_rows_close(&r->rows);
     ti_source_close(r->source);
