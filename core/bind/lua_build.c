@@ -60,6 +60,8 @@ static void note_attribute(lua_State *L, lua_Integer i) {
     int type = attribute_type(L);
     if (strlen(name) != length)
         tl_fail(L, "event %I has an attribute with a NUL byte in its name", (LUAI_UACINT)i);
+    if (strcmp(name, "duration") == 0)
+        tl_fail(L, "attribute \"duration\" of event %I: a link has this word already, give another name", (LUAI_UACINT)i);
     if (type < 0)
         tl_fail(L, "attribute \"%s\" of event %I is a %s: give a number or a text", name, (LUAI_UACINT)i,
                 luaL_typename(L, -1));

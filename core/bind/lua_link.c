@@ -26,12 +26,8 @@ tl_link *tl_push_link(lua_State *L, int network_index, const char *of) {
     }
     static const char *const names[] = {"from", "to", "start", "finish", "duration"};
     for (int i = 0; i < 5; i++) {
-        lua_pushstring(L, names[i]);
-        if (lua_rawget(L, -2) == LUA_TNIL) { /* an attribute may be called duration */
-            lua_pushinteger(L, FROM + i);
-            lua_setfield(L, -3, names[i]);
-        }
-        lua_pop(L, 1);
+        lua_pushinteger(L, FROM + i);
+        lua_setfield(L, -2, names[i]);
     }
     lua_setiuservalue(L, -2, 1);
     link->network = thole_network_retain(net);
