@@ -13,6 +13,7 @@
 enum { FROM, TO, START, FINISH, DURATION, ROLES };
 static const char *const ROLE[ROLES] = {"from", "to", "start", "finish", "duration"};
 static const size_t ABSENT = SIZE_MAX;
+enum { ROWS_BEFORE_RECENT = 100 }; /* a short file does not need it */
 
 typedef struct reader {
     thole_context *context;
@@ -30,7 +31,8 @@ typedef struct reader {
     size_t attribute_n, attribute_cap;
     tb_names names; /* of the attributes */
     uint64_t blank_n, blank_line;
-    ti_recent *recent;
+    ti_recent *recent; /* after some rows */
+    uint64_t stored;   /* until then */
 } reader;
 
 /* ---- options ------------------------------------------------------------- */
@@ -197,9 +199,6 @@ static thole_status settle_form(reader *r, thole_time_form form) {
     memcpy(r->clock.unit, unit, strlen(unit) + 1);
     r->times.form = form;
     r->times.zone = r->clock.zone;
-    r->recent = tb_new(r->context->memory, 1, sizeof *r->recent);
-    if (r->recent == NULL)
-        return tb_refused(r->context->memory, r->error, "the names of nodes");
     thole_status status = thole_builder_open(r->context, &r->clock, &r->builder, r->error);
     if (status != THOLE_OK)
         return status;
@@ -321,6 +320,8 @@ static thole_status store(reader *r, thole_event event) {
     const ti_field *from = field_of(r, FROM), *to = field_of(r, TO);
     bool kept = false;
     bool in_block = !r->rows.quoted; /* which has a margin */
+    if (r->recent == NULL && r->stored++ == ROWS_BEFORE_RECENT && (r->recent = tb_new(r->context->memory, 1, sizeof *r->recent)) == NULL)
+        return tb_refused(r->context->memory, r->error, "the names of nodes");
     thole_status status = ti_recent_node(r->recent, r->builder, from->at, from->length, in_block, &event.from, r->error);
     if (status == THOLE_OK)
         status = ti_recent_node(r->recent, r->builder, to->at, to->length, in_block, &event.to, r->error);
@@ -450,7 +451,8 @@ static thole_status read_rows(reader *r) {
 static thole_status read_source(reader *r, thole_network **out) {
     r->faults.name = ti_source_name(r->source);
     r->faults.rows = &r->rows;
-    thole_status status = ti_rows_open(&r->rows, r->context, r->source, r->error);
+    size_t left = ti_source_left(r->source); /* and a byte more, to see the end */
+    thole_status status = ti_rows_open(&r->rows, r->context, r->source, left < TI_BLOCK ? left + 1 : TI_BLOCK, r->error);
     if (status == THOLE_OK)
         status = read_rows(r);
     if (status == THOLE_OK) {

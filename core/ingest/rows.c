@@ -8,7 +8,7 @@
 #include "ingest/utf8.h"
 
 /* MARGIN bytes beyond the data are line feeds: a search for one always ends, eight bytes at a time. */
-enum { BLOCK = 1 << 18, MARGIN = 16 };
+enum { MARGIN = 16 };
 
 static const uint64_t ONES = UINT64_C(0x0101010101010101), HIGHS = UINT64_C(0x8080808080808080);
 
@@ -57,7 +57,7 @@ static thole_status refill(ti_rows *rows, thole_error *error) {
     rows->begin = 0;
     rows->end = kept;
     if (kept > rows->cap / 2 || rows->cap == 0) {
-        size_t cap = rows->cap == 0 ? BLOCK : rows->cap * 2;
+        size_t cap = rows->cap == 0 ? rows->first_cap : rows->cap * 2;
         char *fresh = tb_resize(memory, rows->block, rows->cap == 0 ? 0 : rows->cap + MARGIN, cap + MARGIN, 1);
         if (fresh == NULL)
             return refused(rows, error);
@@ -74,8 +74,9 @@ static thole_status refill(ti_rows *rows, thole_error *error) {
     return THOLE_OK;
 }
 
-thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, thole_error *error) {
+thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block, thole_error *error) {
     *rows = (ti_rows){.context = context, .source = source, .separator = ',', .most = TI_MOST_COLUMNS, .next_line = 1};
+    rows->first_cap = block > 0 ? block : 1;
     rows->arena.memory = context->memory;
     thole_status status = THOLE_OK;
     while (status == THOLE_OK && rows->end < 3 && !rows->ended)

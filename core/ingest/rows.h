@@ -12,7 +12,8 @@
 enum {
     TI_MOST_FIELD = 1 << 20, /* bytes of a field, quotes included */
     TI_MOST_ROW = 16 << 20,
-    TI_MOST_COLUMNS = 65536
+    TI_MOST_COLUMNS = 65536,
+    TI_BLOCK = 1 << 18
 };
 
 /* Why a row is no good. */
@@ -47,7 +48,7 @@ typedef struct ti_rows {
     const char *row;
     /* inner */
     char *block; /* cap bytes, and then a margin for reading ahead */
-    size_t cap, begin, end;
+    size_t first_cap, cap, begin, end;
     size_t field_cap;
     uint64_t next_line;
     bool ended;   /* the source is at its end */
@@ -55,9 +56,10 @@ typedef struct ti_rows {
     tb_arena arena; /* fields with doubled quotes */
 } ti_rows;
 
-/* Begin reading; a byte-order mark is passed over, UTF-16 refused. The source stays the caller's. Clear with
+/* Begin reading, with blocks of `block` bytes at first (TI_BLOCK; less where the source is known to be smaller, or to
+ * test). A byte-order mark is passed over, UTF-16 refused. The source stays the caller's. Clear with
  * ti_rows_close, after a failure too. */
-thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, thole_error *error);
+thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block, thole_error *error);
 void ti_rows_close(ti_rows *rows);
 
 /* The line that comes next, without its end and without taking it; cut at 1 MiB. *text is NULL at the end. */

@@ -192,6 +192,12 @@ thole_status ti_source_read(ti_source *s, char *into, size_t room, size_t *n, th
     return read_raw(s, into, room, n, error);
 }
 
+size_t ti_source_left(const ti_source *s) {
+    if (s->unpacker != NULL || s->size == 0 || s->size < s->taken)
+        return SIZE_MAX;
+    return (size_t)(s->size - s->taken) + (s->head_n - s->head_from);
+}
+
 const char *ti_source_name(const ti_source *s) { return s->name; }
 
 const char *ti_source_phase(const ti_source *s) { return s->phase; }

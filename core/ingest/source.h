@@ -17,6 +17,9 @@ void ti_source_close(ti_source *source); /* NULL is accepted */
  * whole. Waiting for input stops with THOLE_CANCELLED when asked to. */
 thole_status ti_source_read(ti_source *source, char *into, size_t room, size_t *n, thole_error *error);
 
+/* Bytes that are left, when that is known: else SIZE_MAX. */
+size_t ti_source_left(const ti_source *source);
+
 /* For messages: the name as given, "standard input" for "-". */
 const char *ti_source_name(const ti_source *source);
 
