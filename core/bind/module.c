@@ -172,6 +172,14 @@ static int threads(lua_State *L) {
     return 1;
 }
 
+/* memory() -> bytes of the core in use now, and the most that ever were. */
+static int memory(lua_State *L) {
+    const thole_memory *m = tl_context(L)->memory;
+    lua_pushinteger(L, (lua_Integer)atomic_load(&m->used));
+    lua_pushinteger(L, (lua_Integer)atomic_load(&m->peak));
+    return 2;
+}
+
 /* fail(text): raise it at the recipe's line. */
 static int fail(lua_State *L) { return tl_fail(L, "%s", luaL_checkstring(L, 1)); }
 
@@ -182,7 +190,8 @@ static int readable(lua_State *L) {
 }
 
 static void push_native(lua_State *L) {
-    static const luaL_Reg functions[] = {{"threads", threads}, {"fail", fail}, {"readable", readable}, {NULL, NULL}};
+    static const luaL_Reg functions[] = {
+        {"fail", fail}, {"memory", memory}, {"readable", readable}, {"threads", threads}, {NULL, NULL}};
     luaL_newlib(L, functions);
     lua_pushstring(L, thole_version());
     lua_setfield(L, -2, "version");
