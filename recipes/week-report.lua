@@ -27,19 +27,19 @@ local net = thole.read_contacts(p.input, {
     from = p.from, to = p.to, start = p.start, finish = p.finish,
     time = not zone and "plain" or nil, zone = zone, faulty = p.faulty, columns = {},
 })
+local length = p.length:find("%a") and p.length or p.length .. " " .. net.unit
 local cuts = thole.windows.sliding(net, { length = p.length, overlap = p.overlap })
 local graph = net:zigzag { windows = cuts, radius = "graph", dims = { 0, 1 }, join = p.join }
 local filled = net:zigzag { windows = cuts, radius = 1, dims = { 0, 1 }, join = p.join }
 
 thole.report(p.out, {
     title = p.title,
-    lead = ("The links of the log, cut into windows of %s: when they make one network, when it falls "
-        .. "apart, and "
-        .. "which ways round it has for how long."):format(p.length),
+    lead = ("The links of the log, cut into windows of %s: when they make one network, when it falls apart, "
+        .. "and which ways round it has for how long."):format(length),
     { "findings", bars = graph },
     { "caution" },
     { "days", net = net, bars = graph },
-    { "betti", title = "How many pieces and loops, hour by hour",
+    { "betti",
         { graph, dim = 0, label = "Pieces (dimension 0)" },
         { graph, dim = 1, label = "Loops (dimension 1), radius graph" },
         { filled, dim = 1, label = "Loops (dimension 1), radius 1" } },

@@ -89,10 +89,13 @@ function moments.clock_name(time)
     return hour .. ":" .. minute .. ":" .. second
 end
 
--- A time for people: "Mon 3 Mar 06:20" in local time, or the plain number.
+-- A time for people: "Mon 3 Mar 06:20" in local time ("Monday 3 March 2031 06:20" when long), or the plain
+-- number.
 function moments.name(time, long)
     if type(time) == "number" then return escape.number(time) end
-    return moments.day_name(moments.local_day(time), long) .. " " .. moments.clock_name(time)
+    local day = moments.local_day(time)
+    local year = long and (" %d"):format((moments.date(day))) or ""
+    return moments.day_name(day, long) .. year .. " " .. moments.clock_name(time)
 end
 
 -- A duration for people. `seconds` in the clock's unit; `unit` is the name of a plain clock's unit,

@@ -11,6 +11,8 @@ local svg = require "thole.svg"
 
 local HEAD = 26       -- a panel's heading
 local GAP = 0.012     -- room between two bars of a row, as a share of the width
+local SMALL_GAP = 0.004
+local MANY = 500      -- bars of a panel from which the gap is small: the picture gets high otherwise
 local TITLED = 3000   -- panels with more bars than this carry no words on each bar
 
 local words = {}
@@ -26,11 +28,12 @@ end
 -- Give each bar the lowest row in which it fits; bars come in order of their start. Returns the
 -- number of rows. A heap is not worth it: rows are few where a picture is of use.
 local function into_rows(bars)
+    local gap = #bars < MANY and GAP or SMALL_GAP
     local ends = {}
     for _, bar in ipairs(bars) do
         local row = 1
         while ends[row] and ends[row] > bar.left do row = row + 1 end
-        ends[row] = bar.right + GAP
+        ends[row] = bar.right + gap
         bar.row = row
     end
     return #ends

@@ -44,7 +44,8 @@ local function columns(numbers, shares, scale, most, top)
             local x = math.floor(scale:place(left) * 1e5 + 0.5) / 1e5
             local width = math.floor(scale:place(right) * 1e5 + 0.5) / 1e5 - x
             out[#out + 1] = ('<rect class="step" x="%s" y="%s" width="%s" height="%s"/>\n'):format(
-                svg.percent(x), svg.decimal(top + BODY - height, 1), svg.percent(width), svg.decimal(height, 1))
+                svg.percent(x), svg.decimal(top + BODY - height, 1), svg.percent(width),
+                    svg.decimal(height, 1))
         end
         i = i + 1
     end

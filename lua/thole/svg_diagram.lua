@@ -38,7 +38,9 @@ local KINDS = {
     { "open-closed", pointing_left, "solid" },
     { "open-open", ring, "hollow" },
 }
-local SIZES = { 3, 5, 7 } -- half widths for 1, 2 to 4, 5 or more bars
+-- Half widths of marks for 1, 2 to 4, 5 or more bars; smaller ones where there are many marks.
+local SIZES, SMALL_SIZES = { 3, 5, 7 }, { 2, 3, 4 }
+local MANY = 600
 
 local function size_of(count)
     return count == 1 and 1 or count <= 4 and 2 or 3
@@ -99,7 +101,7 @@ function chart.draw(barcode, opts)
     for _, mark in ipairs(marks) do total = total + mark.count end
     local out = { ('<g class="%s">\n<defs>\n'):format(svg.hue(dim)) }
     for k, kind in ipairs(KINDS) do
-        for s, r in ipairs(SIZES) do
+        for s, r in ipairs(#marks < MANY and SIZES or SMALL_SIZES) do
             out[#out + 1] = ('<path id="%s-%d%d" class="%s" d="%s"/>\n'):format(id, k, s, kind[3], kind[2](r))
         end
     end

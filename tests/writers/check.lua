@@ -18,7 +18,8 @@ local function report(ok, what, detail)
 end
 
 function check.equal(got, wanted, what)
-    local ok = report(got == wanted, what or "not equal", (": got %s, wanted %s"):format(show(got), show(wanted)))
+    local ok = report(got == wanted, what or "not equal",
+        (": got %s, wanted %s"):format(show(got), show(wanted)))
     return ok
 end
 

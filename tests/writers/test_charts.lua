@@ -63,7 +63,8 @@ check.fails(function() write("c.svg", bars, { dim = "1" }) end, 'option "dim" of
 check.fails(function() write(7, bars) end, "must be text, not a number")
 check.fails(function() write("c.csv", { columns = { "a" }, rows = { { {} } } }) end, "a table cannot "
     .. "stand in a table")
-check.fails(function() write("c.jsonl", { columns = { "a" }, rows = { { 1 }, { 0 / 0 } } }) end, "JSON has no number for")
+check.fails(function() write("c.jsonl", { columns = { "a" }, rows = { { 1 }, { 0 / 0 } } }) end,
+    "JSON has no number for")
 check.fails(function() write("c.csv", bars, { format = function() error("of mine", 0) end }) end, "of mine")
 check.equal(check.files["c.csv"], nil)
 check.equal(check.files["c.jsonl"], nil)
@@ -90,7 +91,8 @@ check.equal(scale:name(JUMP), "Sun 30 Mar 01:00")
 
 local BACK = os.time { year = 2031, month = 10, day = 26, hour = 1, isdst = false }
 local function azores_autumn(t) return t < BACK and 0 or -3600 end
-local autumn = axis.over(stand_in.windows(sliding(BACK - 30 * 3600, 3600, 1800, 120), azores_autumn), "Atlantic/Azores")
+local autumn = axis.over(stand_in.windows(sliding(BACK - 30 * 3600, 3600, 1800, 120), azores_autumn),
+    "Atlantic/Azores")
 for _, tick in ipairs(autumn.ticks) do
     if tick.upper == "Sun" then check.equal(tick.at, BACK - 3600, "the first of two midnights") end
     if tick.upper == "Mon" then check.equal(tick.at, BACK + 24 * 3600, "a Sunday of 25 hours") end
@@ -99,7 +101,8 @@ check.equal(autumn:caption(), "local time in Atlantic/Azores, 2031")
 
 for _, span in ipairs { 0.003, 1, 7, 60, 1234.5, 86400, 3e9 } do
     local numbers = axis.over(stand_in.windows { { 100, 100 + span } }, nil, "h")
-    check.truthy(#numbers.ticks >= 2 and #numbers.ticks <= 8, "ticks for a span of " .. span .. ": " .. #numbers.ticks)
+    check.truthy(#numbers.ticks >= 2 and #numbers.ticks <= 8, "ticks for a span of " .. span .. ": "
+        .. #numbers.ticks)
     for _, tick in ipairs(numbers.ticks) do
         check.near(tonumber(tick.upper), tick.at, 1e-9 * math.abs(tick.at), "a tick's label")
         check.truthy(tick.at >= numbers.low and tick.at <= numbers.high, "a tick outside")
@@ -162,7 +165,8 @@ end
 local odd = stand_in.barcode(plain, { { 1, 1.5, 1.5, "closed-closed" } }, { unit = "<b>&" })
 write("odd.svg", odd)
 check.truthy(check.files["odd.svg"]:find('class="passing"', 1, true))
-check.truthy(not check.files["odd.svg"]:find("<b>", 1, true) and check.files["odd.svg"]:find("&lt;b&gt;&amp;", 1, true))
+check.truthy(not check.files["odd.svg"]:find("<b>", 1, true)
+    and check.files["odd.svg"]:find("&lt;b&gt;&amp;", 1, true))
 
 -- ---- curves and stretches -----------------------------------------------------------------------
 
@@ -207,7 +211,8 @@ for _ = 1, 10 * check.cases do
     local barcode = stand_in.barcode(windows, stand_in.random_bars(check.random, n, 40))
     local body = svg_curve.draw({ { barcode = barcode, dim = 0, label = "x" } }).body
     local area, most = 0, 1
-    for rect in body:gmatch("<rect[^>]+>") do area = area + attribute(rect, "width") * attribute(rect, "height") end
+    for rect in body:gmatch("<rect[^>]+>") do area = area + attribute(rect, "width") * attribute(rect,
+        "height") end
     local wanted = 0
     local span = windows[n].finish - windows[1].start
     local shares = moments.shares(windows)
@@ -221,9 +226,10 @@ end
 -- ---- colours ------------------------------------------------------------------------------------
 
 -- Hues of dimensions stay apart for readers who see red, green or blue differently. The matrices for full
--- protanopia, deuteranopia and tritanopia are those of Machado, Oliveira and Fernandes (IEEE Trans. Vis. Comput.
--- Graph. 15, 2009), from memory; distances are CIE 1976 ones in L*a*b*. 20 is several times what is just seen; common
--- practice, no source. Contrast is that of WCAG 2.1: at least 3 for graphics (1.4.11), 4.5 for text (1.4.3).
+-- protanopia, deuteranopia and tritanopia are those of Machado, Oliveira and Fernandes (IEEE Trans. Vis.
+-- Comput. Graph. 15, 2009), from memory; distances are CIE 1976 ones in L*a*b*. 20 is several times what is
+-- just seen; common practice, no source. Contrast is that of WCAG 2.1: at least 3 for graphics (1.4.11), 4.5
+-- for text (1.4.3).
 local SIGHTS = {
     { 1, 0, 0, 0, 1, 0, 0, 0, 1 },
     { 0.152286, 1.052583, -0.204868, 0.114503, 0.786281, 0.099216, -0.003882, -0.048116, 1.051998 },
@@ -274,7 +280,8 @@ for scheme, colours in pairs { light = svg.light, dark = svg.dark } do
                 end
                 local a, b = seen[1], seen[2]
                 local apart = math.sqrt((a[1] - b[1]) ^ 2 + (a[2] - b[2]) ^ 2 + (a[3] - b[3]) ^ 2)
-                check.truthy(apart >= 20, ("%s: hues %d and %d are %.0f apart for sight %d"):format(scheme, i, j, apart, k))
+                check.truthy(apart >= 20, ("%s: hues %d and %d are %.0f apart for sight %d"):format(scheme, i,
+                    j, apart, k))
             end
         end
     end

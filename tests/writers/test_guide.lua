@@ -1,4 +1,5 @@
--- The guide's examples run, and print what the guide says that they print. The blocks of a section are one recipe.
+-- The guide's examples run, and print what the guide says that they print. The blocks of a section are one
+-- recipe.
 --
 --     lua5.4 tests/writers/test_guide.lua [BUILD [bless]]
 --
@@ -29,7 +30,8 @@ local function run(code)
     file:write(code)
     file:close()
     -- Examples name files from the top of the repository, so the recipe is given the right to read there.
-    local _, _, ended = os.execute(("%s/thole run --quiet --trust --out %s %s >%s/out 2>&1"):format(build, folder, path,
+    local _, _, ended = os.execute(("%s/thole run --quiet --trust --out %s %s >%s/out 2>&1"):format(build,
+        folder, path,
         folder))
     return ended, slurp(folder .. "/out")
 end

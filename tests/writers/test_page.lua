@@ -15,7 +15,8 @@ local windows = stand_in.windows(list, function() return -3600 end)
 local bars = stand_in.barcode(windows, { { 0, 1, 3, "closed-closed" }, { 0, 2.5, 3, "open-closed" },
     { 0, 5, 5, "closed-closed" }, { 1, 2, 3, "closed-open" } }, { zone = NASTY })
 local net = stand_in.network({ { "a", "b", windows[1].start, windows[2].start } }, {}, {
-    rows = 9, events = 5, contacts = 0, nodes = 3, links = 2, first = windows[1].start, last = windows[6].finish,
+    rows = 9, events = 5, contacts = 0, nodes = 3, links = 2, first = windows[1].start,
+        last = windows[6].finish,
     self_loops = 1, repeats = 2, skipped = 3, reasons = { { what = NASTY, count = 3, first_line = 1234 } },
     remarks = {}, source = NASTY, bytes = 1000, zone = NASTY, unit = "s" })
 
@@ -23,15 +24,18 @@ report("p.html", { title = NASTY, lead = NASTY,
     { "findings", bars = bars }, { "caution", NASTY }, { "days", bars = bars, net = net },
     { "betti", { bars, dim = 0, label = NASTY } }, { "barcode", { bars, title = NASTY } },
     { "diagram", { bars, dim = 1, title = NASTY } }, { "longest", bars = bars, dim = 1 },
-    { "longest", bars = stand_in.barcode(windows, {}), dim = 1 }, { "account", net = net }, { "text", title = NASTY, NASTY },
-    { "method", recipe = NASTY, parameters = { [NASTY] = NASTY, dims = { 0, 1 } }, net = net, bars = { bars } } })
+    { "longest", bars = stand_in.barcode(windows, {}), dim = 1 }, { "account", net = net },
+        { "text", title = NASTY, NASTY },
+    { "method", recipe = NASTY, parameters = { [NASTY] = NASTY, dims = { 0, 1 } }, net = net,
+        bars = { bars } } })
 local html = check.files["p.html"]
 
 check.truthy(utf8.len(html), "the page is not UTF-8")
 check.truthy(not html:lower():find("<script", 1, true), "a name became markup")
 check.equal(select(2, html:gsub("</style>", "")), 1, "a name closed the style")
 check.truthy(not html:find("%z"))
-for _, piece in ipairs { "http:", "https:", "src=", "@import", "url(h", "javascript:", "onload", "onclick" } do
+for _, piece in ipairs { "http:", "https:", "src=", "@import", "url(h", "javascript:", "onload",
+    "onclick" } do
     check.truthy(not html:find(piece, 1, true), "the page holds " .. piece)
 end
 for target in html:gmatch('href="([^"]*)"') do check.equal(target:sub(1, 1), "#", "a link leads out of "
@@ -61,9 +65,20 @@ for _, piece in ipairs {
     check.truthy(words:find(piece, 1, true), "the page does not say: " .. piece)
 end
 -- Day by day: one day, one link that starts, 3 h in one piece, 1 h in several, 2 h with no link.
+check.truthy(not words:find("Longest in one piece", 1, true), "one day is not longer than itself")
 check.truthy(words:find("Monday 3 March 1 3 h 1 h 2 h 2 1", 1, true), "the row of the day")
 -- The loop: two windows, so an hour from centre to centre.
-check.truthy(words:find("1 1 h Mon 3 Mar 01:00 Mon 3 Mar 03:00 2 to 3 closed-open", 1, true), "the row of the loop")
+check.truthy(words:find("1 1 h Mon 3 Mar 01:00 Mon 3 Mar 03:00 2 to 3 closed-open", 1, true),
+    "the row of the loop")
+
+
+-- Three days of one window each: whole, parted, whole.
+local three = stand_in.windows({ { 1930266000, 1930269600 }, { 1930352400, 1930356000 },
+    { 1930438800, 1930442400 } }, function() return -3600 end)
+report("d.html", { { "days", net = net, bars = stand_in.barcode(three, { { 0, 1, 3, "closed-closed" },
+    { 0, 2, 2, "open-open" } }) } })
+check.truthy(check.files["d.html"]:find("Longest in one piece: 1 h, on Monday 3 March and one other day. " ..
+    "Shortest: none, on Tuesday 4 March.", 1, true))
 
 check.fails(function() report("q.html", { { "acount" } }) end, 'did you mean "account"?')
 check.fails(function() report("q.html", {}) end, "needs a list of parts")
@@ -71,7 +86,8 @@ check.fails(function() report("q.html", { { "longest", bars = bars } }) end, 'pa
     .. '…, a number')
 check.fails(function() report("q.html", { { "days", bars = bars, net = bars } }) end, "must be a network, "
     .. "not a barcode")
-check.fails(function() report("q.html", { { "betti", { bars, dim = 2, label = "x" } } }) end, "dimension 2 is not among")
+check.fails(function() report("q.html", { { "betti", { bars, dim = 2, label = "x" } } }) end,
+    "dimension 2 is not among")
 check.fails(function() report("q.html", { { "betti" } }) end, "needs a list")
 check.fails(function() report("q.html", { { "barcode", { net } } }) end, "begin with a barcode")
 check.fails(function() report("q.html", { { "text", 12 } }) end, "takes paragraphs, not a number")

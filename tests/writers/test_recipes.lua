@@ -1,5 +1,5 @@
--- The recipes, run by the command: known barcodes, the fixed columns and their order, Betti numbers of the demo week
--- recomputed from its text, and the same bytes from any number of threads and from stock Lua.
+-- The recipes, run by the command: known barcodes, the fixed columns and their order, Betti numbers of the
+-- demo week recomputed from its text, and the same bytes from any number of threads and from stock Lua.
 --
 --     lua5.4 tests/writers/test_recipes.lua [BUILD]
 
@@ -29,7 +29,8 @@ end
 -- Run a recipe; returns its exit code and what it said on both streams.
 local function run(words, program)
     local said = folder .. "/said"
-    local _, _, code = os.execute(("%s %s >%s 2>&1"):format(program or build .. "/thole run --quiet", words, said))
+    local _, _, code = os.execute(("%s %s >%s 2>&1"):format(program or build .. "/thole run --quiet", words,
+        said))
     return code, slurp(said)
 end
 
@@ -81,14 +82,16 @@ barcode("input=" .. bridge .. " from=p to=q start=on finish=off length=10 dims=0
 -- Windows from a file, uneven and with a gap; decimals stay exact.
 local windows = spill("windows.csv", "start,finish,label\n0,0.1,early\n0.3,2,late\n")
 local steady = spill("steady.csv", "from,to,start,finish\na,b,0,9.7\n")
-barcode("input=" .. steady .. " windows=" .. windows .. " dims=0", "0,1,2,closed-closed,0.05,1.15,0,2\n", "given windows")
+barcode("input=" .. steady .. " windows=" .. windows .. " dims=0", "0,1,2,closed-closed,0.05,1.15,0,2\n",
+    "given windows")
 
 -- Without a column finish, links are contacts; a compressed log reads the same; an output in another folder.
 local contacts = spill("contacts.csv", "from,to,start\na,b,3\nb,c,4\n")
 barcode("input=" .. contacts .. " length=2 overlap=0 dims=0", "0,1,1,closed-closed,4,4,3,5\n", "contacts")
 assert(os.execute("gzip -k " .. triangle))
 barcode("input=" .. triangle .. ".gz length=10 dims=1", "1,1,1.5,closed-closed,5,10,0,20\n", "gzip")
-check.equal((run("recipes/barcode.lua input=" .. triangle .. " length=10 out=" .. folder .. "/deep/b.csv")), 0)
+check.equal((run("recipes/barcode.lua input=" .. triangle .. " length=10 out=" .. folder .. "/deep/b.csv")),
+    0)
 check.truthy(slurp(folder .. "/deep/b.csv"), "an output in another folder")
 
 -- Calendar times with a zone.
@@ -113,7 +116,8 @@ refused("input=" .. triangle .. " length=10 lenght=10", 'did you mean "length"?'
 refused("input=" .. folder .. "/none.csv length=10", "none.csv")
 local faulty = spill("faulty.csv", "from,to,start,finish\na,b,0,10\na,b,20,10\n")
 refused("input=" .. faulty .. " length=10", "faulty.csv:3")
-barcode("input=" .. faulty .. " length=10 faulty=skip dims=0", "0,1,1,closed-closed,5,5,0,10\n", "a faulty row skipped")
+barcode("input=" .. faulty .. " length=10 faulty=skip dims=0", "0,1,1,closed-closed,5,5,0,10\n",
+    "a faulty row skipped")
 
 -- ---- the demo week ------------------------------------------------------------------------------
 
@@ -170,7 +174,8 @@ for line in (slurp(bars) or ""):gmatch("[^\n]+") do
         line:match("^(%d),([%d.]+),([%d.]+),([%a-]+),([^,]+),([^,]+),([^,]+),([^,]+)$")
     if dim then
         dim, first, last = math.tointeger(tonumber(dim)), tonumber(first), tonumber(last)
-        check.truthy(first <= last and opens < closes and birth <= death and opens < birth and death < closes, line)
+        check.truthy(first <= last and opens < closes and birth <= death and opens < birth and death < closes,
+            line)
         check.equal(seconds(opens), first_start + (math.floor(first) - 1) * 1800, "opens of " .. line)
         check.equal(seconds(closes), first_start + (math.ceil(last) - 1) * 1800 + 3600, "closes of " .. line)
         check.equal(seconds(birth), first_start + (first - 1) * 1800 + 1800, "birth of " .. line)
@@ -201,7 +206,8 @@ end
 
 for _, radius in ipairs { "graph", "1", "2" } do
     local texts = {}
-    for i, program in ipairs { build .. "/thole run --quiet --threads 1", build .. "/thole run --quiet --threads 2",
+    for i, program in ipairs { build .. "/thole run --quiet --threads 1", build
+        .. "/thole run --quiet --threads 2",
         ("LUA_CPATH='%s/?.so' lua5.4"):format(build) } do
         os.remove(bars)
         local ended, words = run(WEEK .. "out=" .. bars .. " radius=" .. radius, program)
@@ -213,7 +219,8 @@ for _, radius in ipairs { "graph", "1", "2" } do
 end
 
 local pages = {}
-for i, program in ipairs { build .. "/thole run --quiet --threads 1", build .. "/thole run --quiet --threads 2",
+for i, program in ipairs { build .. "/thole run --quiet --threads 1", build
+    .. "/thole run --quiet --threads 2",
     ("LUA_CPATH='%s/?.so' lua5.4"):format(build) } do
     local ended, words = run("recipes/week-report.lua out=" .. folder .. "/page.html", program)
     check.equal(ended, 0, words)

@@ -10,7 +10,7 @@ return function(part, id)
         local one = part[i]
         local drawn = svg_barcode.draw(one[1], { id = ("%s-%d-"):format(id, i), dims = one.dims })
         out[#out + 1] = page.figure(svg.inline(drawn), one.title,
-                ("A bar is a piece or a loop for as long as it lasts, on %s.")
+                ("A bar is a piece or a loop for as long as it lasts. Across: %s.")
                 :format(drawn.caption))
     end
     out[#out + 1] = "</div>\n" .. '<p class="note">' .. page.text(svg_barcode.legend) ..

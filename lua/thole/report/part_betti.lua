@@ -10,7 +10,7 @@ return function(part)
         series[#series + 1] = { barcode = part[i][1], dim = part[i].dim, label = part[i].label }
     end
     local drawn = svg_curve.draw(series)
-    return "How many, hour by hour", page.figure(svg.inline(drawn), nil,
-        ("Betti numbers on %s. Each moment is counted with the window whose centre is nearest.")
+    return "How many pieces and loops, window by window", page.figure(svg.inline(drawn), nil,
+        ("Betti numbers. Across: %s. Each moment is counted with the window whose centre is nearest.")
             :format(drawn.caption))
 end

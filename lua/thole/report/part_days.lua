@@ -32,6 +32,21 @@ local function most_within(numbers, shares, left, right)
     return best
 end
 
+-- "12 h, on Monday 3 March and 4 other days": the longest time in one piece (sign 1) or the shortest (-1).
+local function extreme(wholes, sign)
+    local best, others
+    for _, whole in ipairs(wholes) do
+        if not best or sign * whole[2] > sign * best[2] then
+            best, others = whole, 0
+        elseif whole[2] == best[2] then
+            others = others + 1
+        end
+    end
+    local more = others == 0 and "" or others == 1 and " and one other day"
+        or (" and %d other days"):format(others)
+    return ("%s, on %s%s"):format(best[3], best[1], more)
+end
+
 return function(part)
     local bars = part.bars
     local windows = bars.windows
@@ -46,21 +61,26 @@ return function(part)
     local shares = moments.shares(windows)
     local pieces, loops = bars:betti(0), bars:betti(1)
     local starts = starts_by_day(part.net)
-    local rows = {}
+    local rows, wholes = {}, {}
     for day = first, last do
         local left, right = scale:instant(day * DAY), scale:instant((day + 1) * DAY)
         local function lasting(holds)
             local seconds = stretches.within(shares, left, right, holds)
-            return seconds > 0 and moments.duration(seconds) or "none"
+            return seconds > 0 and moments.duration(seconds) or "none", seconds
         end
+        local name = moments.day_name(day, true)
+        local whole, seconds = lasting(function(i) return pieces[i] == 1 end)
+        wholes[#wholes + 1] = { name, seconds, whole }
         rows[#rows + 1] = {
-            page.text((moments.day_name(day, true))), escape.count(starts[day] or 0),
-            lasting(function(i) return pieces[i] == 1 end), lasting(function(i) return pieces[i] > 1 end),
-            lasting(function(i) return pieces[i] == 0 end),
-                    escape.count(most_within(pieces, shares, left, right)),
+            page.text(name), escape.count(starts[day] or 0), whole,
+            (lasting(function(i) return pieces[i] > 1 end)), (lasting(function(i) return pieces[i] == 0 end)),
+            escape.count(most_within(pieces, shares, left, right)),
             escape.count(most_within(loops, shares, left, right)) }
     end
-    return "Day by day", page.table(("Local days in %s, from the first window to the last; loops at "
-        .. "radius %s."):format(
-        bars.zone or "UTC", tostring(bars.radius)), COLUMNS, rows)
+    local longest, shortest = extreme(wholes, 1), extreme(wholes, -1)
+    local words = longest ~= shortest
+        and page.paragraph(("Longest in one piece: %s. Shortest: %s."):format(longest, shortest)) or ""
+    return "Day by day", words .. page.table(("Local days in %s, from the first window to the last; loops "
+        .. "at radius %s.")
+        :format(bars.zone or "UTC", tostring(bars.radius)), COLUMNS, rows)
 end

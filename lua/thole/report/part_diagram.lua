@@ -11,7 +11,7 @@ return function(part, id)
         local one = part[i]
         local drawn = svg_diagram.draw(one[1], { id = ("%s-%d"):format(id, i), dim = one.dim })
         out[#out + 1] = page.figure('<div class="square-box">' .. svg.inline(drawn) .. "</div>\n", one.title,
-            ("%s %s; birth across, death upwards, both in %s. The higher above the diagonal, the longer "
+            ("%s %s; birth across, death upwards (%s). The higher above the diagonal, the longer "
                 .. "it lasts.")
             :format(escape.count(drawn.bars), drawn.bars == 1 and "bar" or "bars", drawn.caption))
     end

@@ -8,7 +8,10 @@ local page = require "thole.report.page"
 local stretches = require "thole.report.stretches"
 
 local function percent(part, whole)
-    return ("%d %%"):format(math.floor(100 * part / whole + 0.5))
+    local share = 100 * part / whole
+    if share > 0 and share < 1 then return "under 1 %" end
+    if share > 99 and share < 100 then return "over 99 %" end
+    return ("%d %%"):format(math.floor(share + 0.5))
 end
 
 local function most(numbers)
