@@ -13,7 +13,7 @@ local list = {}
 for i = 0, 5 do list[#list + 1] = { 1930266000 + i * 3600, 1930269600 + i * 3600 } end
 local windows = stand_in.windows(list, function() return -3600 end)
 local bars = stand_in.barcode(windows, { { 0, 1, 3, "closed-closed" }, { 0, 2.5, 3, "open-closed" },
-    { 0, 5, 5, "closed-closed" }, { 1, 2, 3, "closed-open" } }, { zone = NASTY })
+    { 0, 5, 5, "closed-closed" }, { 1, 2, 3, "closed-open" } }, { zone = NASTY, peak_bytes = 12345678 })
 local net = stand_in.network({ { "a", "b", windows[1].start, windows[2].start } }, {}, {
     rows = 9, events = 5, contacts = 0, nodes = 3, links = 2, first = windows[1].start,
         last = windows[6].finish,
@@ -60,7 +60,7 @@ for _, piece in ipairs {
     "1 loop at once was the most",
     "1 row whose two ends are the same place", "3 faulty rows", "1,234", "2 rows that repeat",
     "9, of which 5 became links", "6 windows of 1 h, each starting 1 h after the one before",
-    "There are no loops.", "timetable, not of what sails", "people licensed for the work",
+    "There are no loops.", "memory at most 20 MB", "cells: 4 of dimension 0, 3 of dimension 1", "timetable, not of what sails", "people licensed for the work",
 } do
     check.truthy(words:find(piece, 1, true), "the page does not say: " .. piece)
 end

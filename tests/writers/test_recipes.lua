@@ -119,6 +119,23 @@ refused("input=" .. faulty .. " length=10", "faulty.csv:3")
 barcode("input=" .. faulty .. " length=10 faulty=skip dims=0", "0,1,1,closed-closed,5,5,0,10\n",
     "a faulty row skipped")
 
+-- ---- a failure half way -------------------------------------------------------------------------
+
+spill("deep/old.txt", "the old one\n")
+spill("half.lua", [[
+local thole = require "thole"
+thole.write("old.txt", "", { format = function(_, out)
+    out:write(("x"):rep(1000000))
+    error("of the recipe's own")
+end })
+]])
+local ended, words = run("--out " .. folder .. "/deep " .. folder .. "/half.lua")
+check.equal(ended, 1, "a failing format")
+check.truthy(words:find("half.lua:4: of the recipe's own", 1, true), words)
+check.equal(slurp(folder .. "/deep/old.txt"), "the old one\n", "the old file is whole")
+os.execute("ls -A " .. folder .. "/deep >" .. folder .. "/list")
+check.equal(slurp(folder .. "/list"), "b.csv\nold.txt\n", "nothing is left beside it")
+
 -- ---- the demo week ------------------------------------------------------------------------------
 
 -- Seconds since Monday 00:00 local, from the text; every row of the week has the same offset.
