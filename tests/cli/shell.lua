@@ -69,6 +69,12 @@ function shell.environment(build, lua)
         "LUA=" .. shell.quote(lua),
         "LUA_CPATH=" .. shell.quote(build .. "/?.so;;"),
         "PATH=" .. shell.quote(build) .. ":$PATH",
+        -- A module with the address sanitizer in it needs the sanitizer's library first in the stock interpreter,
+        -- whose own memory is not all given back at its end.
+        [[if grep -q __asan_init "$BUILD/thole.so"; then
+            LUA="env LD_PRELOAD=$(gcc -print-file-name=libasan.so):$(gcc -print-file-name=libubsan.so) ]]
+            .. [[ASAN_OPTIONS=detect_leaks=0 $LUA"
+        fi]],
         "export BUILD LUA LUA_CPATH PATH",
         -- interrupt COMMAND …: send SIGINT once it has said "ready" on standard error; its exit code. A command
         -- that does not end within ten seconds is killed.
