@@ -19,3 +19,10 @@ test-core: $(TEST_BIN)
 test-cli: $(BUILD)/thole $(BUILD)/thole.so
 	$(LUA) tests/cli/cases.lua $(BUILD)
 	$(LUA) tests/cli/escapes.lua $(BUILD)
+
+# The Lua interface, in the stock interpreter and in the host.
+.PHONY: test-lua
+test-lua: $(BUILD)/thole $(BUILD)/thole.so
+	tests/lint/module.sh $(BUILD)
+	LUA_CPATH='$(abspath $(BUILD))/?.so' $(LUA) tests/lua/run.lua
+	$(BUILD)/thole run --trust tests/lua/run.lua

@@ -59,23 +59,28 @@ size_t tl_usual_ceiling(void);
 /* Tell the collector that an object now holds `bytes` outside of Lua: [-0, +0, raises (finalisers run)]. */
 void tl_burden(lua_State *L, size_t bytes);
 
-/* Push the path to open for `path` at `index` (a text without NUL), as the host's gate has it; raises when the gate refuses.
- * mode: "read" or "write". of: who asks, for messages. */
+/* Push the path to open for `path` at `index` (a text without NUL), as the host's gate has it; raises when
+ * the gate refuses. mode: "read" or "write". of: who asks, for messages. */
 const char *tl_gate(lua_State *L, int index, const char *mode, const char *of);
 
-/* Make the metatable of a type: `special` are its __ functions; with `index`, its __index is that function with the
- * table of `methods` as its upvalue, else that table. The methods are also put under the name's
+/* Make the metatable of a type: `special` are its __ functions; with `index`, its __index is that function
+ * with the table of `methods` as its upvalue, else that table. The methods are also put under the name's
  * middle part ("network") into the table "methods" of the native functions on the top: [-0, +0, raises]. */
-void tl_new_type(lua_State *L, const char *name, const luaL_Reg *special, const luaL_Reg *methods, lua_CFunction index);
+void tl_new_type(lua_State *L, const char *name, const luaL_Reg *special, const luaL_Reg *methods,
+                 lua_CFunction index);
 
 /* More methods for the type of that middle part: [-0, +0, raises]. */
 void tl_add_methods(lua_State *L, const char *type, const luaL_Reg *methods);
 
+/* Note the names of the fields of that type, for those who compare the description with what there is: into
+ * the table "fields" of the native functions on the top: [-0, +0, raises]. */
+void tl_add_fields(lua_State *L, const char *type, size_t n, const char *const *names);
+
 /* In an __index: the value for the key at 2 from the methods in upvalue 1, pushed, true; else false. */
 bool tl_find_method(lua_State *L);
 
-/* Raise that `what` ("a network") has no field with the key at 2. Known are the keys of the table at `table` and n
- * more. */
+/* Raise that `what` ("a network") has no field with the key at 2. Known are the keys of the table at `table`
+ * and n more. */
 int tl_no_field(lua_State *L, const char *what, int table, size_t n, const char *const *more);
 
 /* ---- option_table.c: tables of options ----------------------------------------------------------- */
@@ -95,14 +100,15 @@ int tl_option(lua_State *L, const tl_options *options, const char *name);
 /* Raise 'option "x" of f: …'. */
 int tl_option_fail(lua_State *L, const tl_options *options, const char *name, const char *format, ...);
 
-/* Options of one type, or what stands for a missing one. Texts are without NUL and live as long as the table. */
+/* Options of one type, or what stands for a missing one. Texts are without NUL and live as long as the table.
+ */
 const char *tl_option_text(lua_State *L, const tl_options *options, const char *name, const char *missing);
 bool tl_option_boolean(lua_State *L, const tl_options *options, const char *name, bool missing);
 lua_Integer tl_option_integer(lua_State *L, const tl_options *options, const char *name, lua_Integer least,
                               lua_Integer most, lua_Integer missing);
 /* The number of the given text in `names`. */
-int tl_option_choice(lua_State *L, const tl_options *options, const char *name, size_t n, const char *const *names,
-                     int missing);
+int tl_option_choice(lua_State *L, const tl_options *options, const char *name, size_t n,
+                     const char *const *names, int missing);
 
 /* ---- lua_times.c: times and durations ------------------------------------------------------------ */
 

@@ -19,7 +19,8 @@ thole_barcode **tl_push_barcode(lua_State *L) {
 static thole_barcode *check_barcode(lua_State *L, int index, const char *of) {
     barcode *b = luaL_testudata(L, index, TL_BARCODE);
     if (b == NULL)
-        tl_fail(L, "%s takes a barcode, not a %s: call it with a colon, as in bars:each()", of, luaL_typename(L, index));
+        tl_fail(L, "%s takes a barcode, not a %s: call it with a colon, as in bars:each()", of,
+                luaL_typename(L, index));
     if (b->barcode == NULL)
         tl_fail(L, "this barcode is closed: %s comes too late", of);
     return b->barcode;
@@ -69,7 +70,8 @@ static moment moment_of(const thole_barcode *b, thole_bar bar, bar_time which) {
     return m;
 }
 
-static void set_moment(lua_State *L, const thole_barcode *b, thole_bar bar, bar_time which, const char *name) {
+static void set_moment(lua_State *L, const thole_barcode *b, thole_bar bar, bar_time which,
+                       const char *name) {
     moment m = moment_of(b, bar, which);
     tl_push_time(L, thole_barcode_clock(b), m.ticks, m.quarters);
     lua_setfield(L, -2, name);
@@ -140,7 +142,8 @@ static int exact_text(lua_State *L) {
 /* ---- choosing ------------------------------------------------------------------------------------ */
 
 /* A window's number, or the half between two, to a position. */
-static void choose_position(lua_State *L, const tl_options *options, const thole_barcode *b, thole_choice *choice) {
+static void choose_position(lua_State *L, const tl_options *options, const thole_barcode *b,
+                            thole_choice *choice) {
     int type = tl_option(L, options, "at");
     size_t windows = thole_windows_count(thole_barcode_windows(b));
     lua_Number at = type == LUA_TNUMBER ? lua_tonumber(L, -1) * 2 - 2 : -1;
@@ -163,7 +166,8 @@ static thole_choice choice_of(lua_State *L, int index, const thole_barcode *b, c
     if (dim >= 0)
         choice.dims = 1u << dim;
     if (dim >= 0 && (thole_barcode_options(b)->dims >> dim & 1) == 0)
-        tl_option_fail(L, &options, "dim", " is %d, which was not computed: ask for it in dims of net:zigzag", (int)dim);
+        tl_option_fail(L, &options, "dim", " is %d, which was not computed: ask for it in dims of net:zigzag",
+                       (int)dim);
     int kind = tl_option_choice(L, &options, "kind", 4, kinds, -1);
     if (kind >= 0)
         choice.kinds = 1u << kind;
@@ -314,23 +318,28 @@ static void push_cells(lua_State *L, const thole_barcode *b) {
     }
 }
 
+/* In the order of the cases below. */
+static const char *const FIELDS[] = {"cells",  "dims", "join",    "nodes", "peak_bytes",
+                                     "radius", "unit", "windows", "zone"};
+enum { FIELD_COUNT = sizeof FIELDS / sizeof *FIELDS };
+
 static int field(lua_State *L) {
-    static const char *const names[] = {"cells", "dims",   "join", "nodes",  "peak_bytes",
-                                        "radius", "unit", "windows", "zone"};
     if (tl_find_method(L))
         return 1;
     const char *key = lua_type(L, 2) == LUA_TSTRING ? lua_tostring(L, 2) : "";
-    size_t which = 0, known = sizeof names / sizeof *names;
-    while (which < known && strcmp(key, names[which]) != 0)
+    size_t which = 0;
+    while (which < FIELD_COUNT && strcmp(key, FIELDS[which]) != 0)
         which++;
-    if (which == known)
-        return tl_no_field(L, "a barcode", lua_upvalueindex(1), known, names);
+    if (which == FIELD_COUNT)
+        return tl_no_field(L, "a barcode", lua_upvalueindex(1), FIELD_COUNT, FIELDS);
     thole_barcode *b = check_barcode(L, 1, key);
     const thole_clock *clock = thole_barcode_clock(b);
     switch (which) {
     case 0: push_cells(L, b); break;
     case 1: push_dims(L, b); break;
-    case 2: lua_pushstring(L, thole_barcode_options(b)->join == THOLE_JOIN_UNION ? "union" : "intersection"); break;
+    case 2:
+        lua_pushstring(L, thole_barcode_options(b)->join == THOLE_JOIN_UNION ? "union" : "intersection");
+        break;
     case 3: lua_pushstring(L, thole_barcode_options(b)->all_nodes ? "all" : "linked"); break;
     case 4: lua_pushinteger(L, (lua_Integer)thole_barcode_counts(b)->peak_bytes); break;
     case 5: push_radius(L, b); break;
@@ -346,9 +355,13 @@ static int field(lua_State *L) {
 }
 
 void tl_open_barcode(lua_State *L) {
-    static const luaL_Reg special[] = {{"__gc", close_barcode}, {"__close", close_barcode}, {"__len", length},
-                                       {"__tostring", text},    {NULL, NULL}};
+    static const luaL_Reg special[] = {{"__gc", close_barcode},
+                                       {"__close", close_barcode},
+                                       {"__len", length},
+                                       {"__tostring", text},
+                                       {NULL, NULL}};
     static const luaL_Reg methods[] = {{"betti", betti}, {"close", close_barcode}, {"count", count},
                                        {"each", each},   {"text", exact_text},     {NULL, NULL}};
     tl_new_type(L, TL_BARCODE, special, methods, field);
+    tl_add_fields(L, "barcode", FIELD_COUNT, FIELDS);
 }

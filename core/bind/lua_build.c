@@ -61,7 +61,8 @@ static void note_attribute(lua_State *L, lua_Integer i) {
     if (strlen(name) != length)
         tl_fail(L, "event %I has an attribute with a NUL byte in its name", (LUAI_UACINT)i);
     if (strcmp(name, "duration") == 0)
-        tl_fail(L, "attribute \"duration\" of event %I: a link has this word already, give another name", (LUAI_UACINT)i);
+        tl_fail(L, "attribute \"duration\" of event %I: a link has this word already, give another name",
+                (LUAI_UACINT)i);
     if (type < 0)
         tl_fail(L, "attribute \"%s\" of event %I is a %s: give a number or a text", name, (LUAI_UACINT)i,
                 luaL_typename(L, -1));
@@ -70,7 +71,8 @@ static void note_attribute(lua_State *L, lua_Integer i) {
         int before = (int)lua_tointeger(L, -1);
         if ((before == THOLE_TEXT) != (type == THOLE_TEXT))
             tl_fail(L, "attribute \"%s\" of event %I is a %s, before it was a %s: give it one type", name,
-                    (LUAI_UACINT)i, type == THOLE_TEXT ? "text" : "number", type == THOLE_TEXT ? "number" : "text");
+                    (LUAI_UACINT)i, type == THOLE_TEXT ? "text" : "number",
+                    type == THOLE_TEXT ? "number" : "text");
         if (before > type)
             type = before;
     }
@@ -84,7 +86,8 @@ static void note_types(lua_State *L) {
     lua_Integer n = (lua_Integer)lua_rawlen(L, 1);
     for (lua_Integer i = 1; i <= n; i++) {
         if (lua_rawgeti(L, 1, i) != LUA_TTABLE)
-            tl_fail(L, "event %I is a %s: give a table { from, to, start, finish }", (LUAI_UACINT)i, luaL_typename(L, -1));
+            tl_fail(L, "event %I is a %s: give a table { from, to, start, finish }", (LUAI_UACINT)i,
+                    luaL_typename(L, -1));
         lua_pushnil(L);
         for (; lua_next(L, -2) != 0; lua_pop(L, 1))
             if (main_field(L, -2) == 0)
@@ -93,8 +96,8 @@ static void note_types(lua_State *L) {
     }
 }
 
-/* Add a column for each name in the table of types, by name, since tables have no order; the table maps names to
- * columns and types afterwards (column * 4 + type). */
+/* Add a column for each name in the table of types, by name, since tables have no order; the table maps names
+ * to columns and types afterwards (column * 4 + type). */
 static void add_columns(lua_State *L, thole_builder *builder) {
     size_t n = 0, known = 0;
     lua_pushnil(L);
@@ -141,7 +144,8 @@ static int main_value(lua_State *L, lua_Integer i, lua_Integer at, const char *n
     return lua_type(L, -1);
 }
 
-static uint32_t node_of(lua_State *L, thole_builder *builder, lua_Integer i, lua_Integer at, const char *name) {
+static uint32_t node_of(lua_State *L, thole_builder *builder, lua_Integer i, lua_Integer at,
+                        const char *name) {
     int type = main_value(L, i, at, name);
     if (type != LUA_TSTRING && !lua_isinteger(L, -1))
         tl_fail(L, "event %I: %s is the name of a node, not %s", (LUAI_UACINT)i, name,
@@ -158,8 +162,8 @@ static uint32_t node_of(lua_State *L, thole_builder *builder, lua_Integer i, lua
     return node;
 }
 
-static int64_t time_of(lua_State *L, const thole_clock *clock, lua_Integer i, lua_Integer at, const char *name,
-                       int64_t missing) {
+static int64_t time_of(lua_State *L, const thole_clock *clock, lua_Integer i, lua_Integer at,
+                       const char *name, int64_t missing) {
     int64_t ticks = missing;
     int type = main_value(L, i, at, name);
     if (type == LUA_TNIL && at == 3)
@@ -182,10 +186,12 @@ static thole_value value_of(lua_State *L, thole_type type, lua_Integer i, const 
     } else {
         value.real = lua_tonumber(L, -1);
         if (isnan(value.real))
-            tl_fail(L, "attribute \"%s\" of event %I is not a number (nan): leave it out", name, (LUAI_UACINT)i);
-        if (lua_isinteger(L, -1) && (value.real >= 0x1p63 || (lua_Integer)value.real != lua_tointeger(L, -1)))
-            tl_fail(L, "attribute \"%s\" of event %I cannot be kept exactly beside fractions: give it as a text", name,
+            tl_fail(L, "attribute \"%s\" of event %I is not a number (nan): leave it out", name,
                     (LUAI_UACINT)i);
+        if (lua_isinteger(L, -1) && (value.real >= 0x1p63 || (lua_Integer)value.real != lua_tointeger(L, -1)))
+            tl_fail(L,
+                    "attribute \"%s\" of event %I cannot be kept exactly beside fractions: give it as a text",
+                    name, (LUAI_UACINT)i);
     }
     return value;
 }
@@ -264,10 +270,12 @@ static bool starts_as_calendar(lua_State *L) {
 static void choose_clock(lua_State *L, thole_clock *clock) {
     static const char *const names[] = {"unit", "zone"};
     tl_options options = tl_options_at(L, 2, OF, 2, names);
-    const char *zone = tl_option_text(L, &options, "zone", NULL), *unit = tl_option_text(L, &options, "unit", NULL);
+    const char *zone = tl_option_text(L, &options, "zone", NULL),
+               *unit = tl_option_text(L, &options, "unit", NULL);
     *clock = (thole_clock){.kind = THOLE_PLAIN, .unit = "s"};
     if (zone != NULL && unit != NULL)
-        tl_option_fail(L, &options, "unit", " is for plain numbers, but a zone is given: leave out one of them");
+        tl_option_fail(L, &options, "unit",
+                       " is for plain numbers, but a zone is given: leave out one of them");
     if (zone != NULL || (unit == NULL && starts_as_calendar(L)))
         clock->kind = THOLE_CALENDAR;
     if (unit != NULL) {

@@ -6,7 +6,8 @@
 static const char OF[] = "thole.read_contacts";
 
 /* A column by name or by number from 1; `missing` when it is not given. */
-static thole_column_ref column(lua_State *L, const tl_options *options, const char *name, const char *missing) {
+static thole_column_ref column(lua_State *L, const tl_options *options, const char *name,
+                               const char *missing) {
     thole_column_ref ref = {missing, 0};
     int type = tl_option(L, options, name);
     lua_pop(L, 1);
@@ -15,7 +16,8 @@ static thole_column_ref column(lua_State *L, const tl_options *options, const ch
     else if (type == LUA_TSTRING)
         ref.name = tl_option_text(L, options, name, missing);
     else if (type != LUA_TNIL)
-        tl_option_fail(L, options, name, " is the name of a column or its number, not a %s", lua_typename(L, type));
+        tl_option_fail(L, options, name, " is the name of a column or its number, not a %s",
+                       lua_typename(L, type));
     return ref;
 }
 
@@ -78,8 +80,9 @@ static void columns(lua_State *L, const tl_options *options, thole_contacts_opti
 }
 
 static int read_contacts(lua_State *L) {
-    static const char *const names[] = {"columns", "duration", "faulty", "finish", "from",  "header", "linger",
-                                        "separator", "start",  "time",   "to",     "unit", "zone"};
+    static const char *const names[] = {"columns", "duration", "faulty",    "finish", "from",
+                                        "header",  "linger",   "separator", "start",  "time",
+                                        "to",      "unit",     "zone"};
     static const char *const forms[] = {"iso", "epoch", "plain"}; /* in the order of thole_time_form */
     static const char *const faults[] = {"stop", "skip"};
     lua_settop(L, 2);

@@ -77,7 +77,8 @@ static thole_value value_of(translation *t, const char *field) {
         value.type = THOLE_REAL;
         value.real = lua_tonumber(L, -1);
     } else {
-        tl_fail(L, "filter of %s: field \"%s\" is compared with a %s: give %s", t->of, field, luaL_typename(L, -1),
+        tl_fail(L, "filter of %s: field \"%s\" is compared with a %s: give %s", t->of, field,
+                luaL_typename(L, -1),
                 kind == NODE ? "a name" : "a number, a text, a list, { min =, max = }, true or false");
     }
     return value;
@@ -122,12 +123,14 @@ static void table_of(translation *t, thole_test *test) {
             bounds++;
         } else {
             lua_pushvalue(L, -2);
-            tl_fail(L, "filter of %s: field \"%s\" has \"%s\", but knows min, max, or a list of values", t->of,
-                    test->field, luaL_tolstring(L, -1, NULL));
+            tl_fail(L, "filter of %s: field \"%s\" has \"%s\", but knows min, max, or a list of values",
+                    t->of, test->field, luaL_tolstring(L, -1, NULL));
         }
     }
     if (listed != n || (listed > 0) == (bounds > 0))
-        tl_fail(L, "filter of %s: field \"%s\" is compared with %s: give either a list of values or { min =, max = }",
+        tl_fail(L,
+                "filter of %s: field \"%s\" is compared with %s: give either a list of values or { min =, "
+                "max = }",
                 t->of, test->field, listed == 0 && bounds == 0 ? "an empty table" : "a mixed table");
     if (listed > 0)
         list_of(t, test, n);
@@ -143,14 +146,17 @@ static thole_test test_of(translation *t);
 static thole_test children_of(translation *t, thole_test_kind kind, const char *word) {
     lua_State *L = t->L;
     if (lua_type(L, -1) != LUA_TTABLE)
-        tl_fail(L, "filter of %s: \"%s\" takes a list of filters, not a %s", t->of, word, luaL_typename(L, -1));
+        tl_fail(L, "filter of %s: \"%s\" takes a list of filters, not a %s", t->of, word,
+                luaL_typename(L, -1));
     size_t n = lua_rawlen(L, -1);
     bool list = n > 0;
     if (!list) {
         /* { a = 1, b = 2 } could be read as either of both. */
         if (strcmp(word, "no") != 0)
-            tl_fail(L, "filter of %s: \"%s\" takes a list of filters, as in { { mode = \"ferry\" }, { seats = 4 } }",
-                    t->of, word);
+            tl_fail(
+                L,
+                "filter of %s: \"%s\" takes a list of filters, as in { { mode = \"ferry\" }, { seats = 4 } }",
+                t->of, word);
         n = 1;
     }
     thole_test *children = take(t, n, sizeof *children);
@@ -166,7 +172,8 @@ static thole_test children_of(translation *t, thole_test_kind kind, const char *
         lua_pushnil(L);
         for (size_t keys = 0; lua_next(L, -2) != 0; lua_pop(L, 1))
             if (++keys > n)
-                tl_fail(L, "filter of %s: \"%s\" has a list and other keys: give a list of filters", t->of, word);
+                tl_fail(L, "filter of %s: \"%s\" has a list and other keys: give a list of filters", t->of,
+                        word);
     }
     return (thole_test){.kind = kind, .children = children, .child_count = n};
 }
@@ -220,8 +227,8 @@ static thole_test test_of(translation *t) {
     lua_pushnil(L);
     for (; lua_next(L, -2) != 0; lua_pop(L, 1)) {
         if (lua_type(L, -2) != LUA_TSTRING)
-            tl_fail(L, "filter of %s: a filter has names of fields, as in { mode = \"ferry\" }, not %s keys", t->of,
-                    luaL_typename(L, -2));
+            tl_fail(L, "filter of %s: a filter has names of fields, as in { mode = \"ferry\" }, not %s keys",
+                    t->of, luaL_typename(L, -2));
         n++;
     }
     if (n == 0)

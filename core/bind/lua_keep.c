@@ -76,8 +76,8 @@ static int choose(lua_State *L, const char *of, bool drop) {
     tl_check_network(L, 1, of);
     int type = lua_type(L, 2);
     if (type != LUA_TTABLE && type != LUA_TFUNCTION)
-        return tl_fail(L, "%s takes a table, as in { mode = \"ferry\" }, or a function of a link, not a %s", of,
-                       lua_typename(L, type));
+        return tl_fail(L, "%s takes a table, as in { mode = \"ferry\" }, or a function of a link, not a %s",
+                       of, lua_typename(L, type));
     type == LUA_TTABLE ? by_table(L, of, drop) : by_function(L, of, drop);
     size_t view_bytes = 0;
     thole_network_bytes(tl_check_network(L, -1, of), &view_bytes);

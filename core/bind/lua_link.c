@@ -4,7 +4,8 @@
 #include "bind/bind.h"
 
 /* Numbers of the fields that are no attributes; attribute c is c. */
-enum { FROM = -6, TO, START, FINISH, DURATION };
+enum { FROM = -5, TO, START, FINISH, DURATION, OWN_FIELDS = 5 };
+static const char *const OWN[OWN_FIELDS] = {"from", "to", "start", "finish", "duration"};
 
 void tl_link_over(tl_link *link) {
     thole_network *held = link->network;
@@ -19,15 +20,14 @@ tl_link *tl_push_link(lua_State *L, int network_index, const char *of) {
     *link = (tl_link){NULL, 0};
     luaL_setmetatable(L, TL_LINK);
     uint32_t n = thole_network_columns(net);
-    lua_createtable(L, 0, (int)n + 5);
+    lua_createtable(L, 0, (int)n + OWN_FIELDS);
     for (uint32_t c = 0; c < n; c++) {
         lua_pushinteger(L, c);
         lua_setfield(L, -2, thole_network_column_name(net, c));
     }
-    static const char *const names[] = {"from", "to", "start", "finish", "duration"};
-    for (int i = 0; i < 5; i++) {
+    for (int i = 0; i < OWN_FIELDS; i++) {
         lua_pushinteger(L, FROM + i);
-        lua_setfield(L, -2, names[i]);
+        lua_setfield(L, -2, OWN[i]);
     }
     lua_setiuservalue(L, -2, 1);
     link->network = thole_network_retain(net);
@@ -63,7 +63,8 @@ static int field(lua_State *L) {
         return tl_no_field(L, "a link", 3, 0, NULL);
     }
     if (link->network == NULL)
-        return tl_fail(L, "the loop that this link belongs to is over: take the fields that you need inside of it");
+        return tl_fail(
+            L, "the loop that this link belongs to is over: take the fields that you need inside of it");
     lua_Integer which = lua_tointeger(L, -1);
     const thole_network *net = link->network;
     if (which >= 0) {
@@ -99,7 +100,8 @@ static int text(lua_State *L) {
     char start[THOLE_TIME_SIZE], finish[THOLE_TIME_SIZE];
     thole_format_time(clock, event.start, 0, start);
     thole_format_time(clock, event.finish, 0, finish);
-    lua_pushfstring(L, "link from %s to %s, %s to %s", thole_network_node_name(link->network, event.from, NULL),
+    lua_pushfstring(L, "link from %s to %s, %s to %s",
+                    thole_network_node_name(link->network, event.from, NULL),
                     thole_network_node_name(link->network, event.to, NULL), start, finish);
     return 1;
 }
@@ -143,4 +145,5 @@ void tl_open_link(lua_State *L) {
     lua_setfield(L, -2, "__metatable");
     lua_pop(L, 1);
     tl_add_methods(L, "network", methods);
+    tl_add_fields(L, "link", OWN_FIELDS, OWN);
 }

@@ -66,8 +66,10 @@ static void push_zone(lua_State *L, const thole_clock *clock) {
         lua_pushnil(L);
 }
 
+static const char *const FIELDS[] = {"columns", "unit", "zone"};
+enum { FIELD_COUNT = sizeof FIELDS / sizeof *FIELDS };
+
 static int field(lua_State *L) {
-    static const char *const fields[] = {"columns", "unit", "zone"};
     if (tl_find_method(L))
         return 1;
     const char *key = lua_type(L, 2) == LUA_TSTRING ? lua_tostring(L, 2) : "";
@@ -78,7 +80,7 @@ static int field(lua_State *L) {
     } else if (strcmp(key, "zone") == 0) {
         push_zone(L, thole_network_clock(tl_check_network(L, 1, "zone")));
     } else {
-        return tl_no_field(L, "a network", lua_upvalueindex(1), sizeof fields / sizeof *fields, fields);
+        return tl_no_field(L, "a network", lua_upvalueindex(1), FIELD_COUNT, FIELDS);
     }
     return 1;
 }
@@ -228,11 +230,16 @@ static int between(lua_State *L) {
 }
 
 void tl_open_network(lua_State *L) {
-    static const luaL_Reg special[] = {{"__gc", close_network}, {"__close", close_network}, {"__len", count},
-                                       {"__tostring", text},    {NULL, NULL}};
+    static const luaL_Reg special[] = {{"__gc", close_network},
+                                       {"__close", close_network},
+                                       {"__len", count},
+                                       {"__tostring", text},
+                                       {NULL, NULL}};
     static const luaL_Reg methods[] = {{"between", between}, {"close", close_network}, {"nodes", nodes},
                                        {"span", span},       {"summary", summary},     {NULL, NULL}};
-    static const luaL_Reg functions[] = {{"contact_at", contact_at}, {"span_ticks", span_ticks}, {NULL, NULL}};
+    static const luaL_Reg functions[] = {
+        {"contact_at", contact_at}, {"span_ticks", span_ticks}, {NULL, NULL}};
     tl_new_type(L, TL_NETWORK, special, methods, field);
+    tl_add_fields(L, "network", FIELD_COUNT, FIELDS);
     luaL_setfuncs(L, functions, 0);
 }

@@ -24,8 +24,9 @@ static bool reads_as(lua_State *L, const char *text, double x) {
     return same;
 }
 
-/* A float stands for the shortest decimal that reads back as it. Sums like 0.1 + 0.2 are a hair beside the number
- * that is meant: where the shortest decimal is finer than a tick, what print shows (14 digits) is taken. */
+/* A float stands for the shortest decimal that reads back as it. Sums like 0.1 + 0.2 are a hair beside the
+ * number that is meant: where the shortest decimal is finer than a tick, what print shows (14 digits) is
+ * taken. */
 static thole_parse float_to_ticks(lua_State *L, double x, int64_t *ticks) {
     char text[40];
     int n = 0;
@@ -95,12 +96,14 @@ bool tl_to_time(lua_State *L, int index, const thole_clock *clock, int64_t *tick
     if (clock->kind == THOLE_PLAIN) {
         thole_parse how = thole_parse_decimal(text, length, ticks);
         return how == THOLE_PARSED ||
-               text_failed(L, text, how, "time", "the network's times are plain numbers, write for example 12.5");
+               text_failed(L, text, how, "time",
+                           "the network's times are plain numbers, write for example 12.5");
     }
     thole_parse how = thole_parse_iso8601(text, length, clock->zone, ticks, NULL);
     return how == THOLE_PARSED ||
-           text_failed(L, text, how, "time",
-                       "write for example \"2031-05-04T06:20\", or seconds since 1970-01-01T00:00:00Z as a number");
+           text_failed(
+               L, text, how, "time",
+               "write for example \"2031-05-04T06:20\", or seconds since 1970-01-01T00:00:00Z as a number");
 }
 
 bool tl_to_duration(lua_State *L, int index, const thole_clock *clock, int64_t *ticks) {
@@ -204,7 +207,9 @@ static int ticks_of_number(lua_State *L) {
 }
 
 void tl_open_times(lua_State *L) {
-    static const luaL_Reg functions[] = {
-        {"ticks", ticks_of_time}, {"duration_ticks", ticks_of_duration}, {"number_ticks", ticks_of_number}, {NULL, NULL}};
+    static const luaL_Reg functions[] = {{"ticks", ticks_of_time},
+                                         {"duration_ticks", ticks_of_duration},
+                                         {"number_ticks", ticks_of_number},
+                                         {NULL, NULL}};
     luaL_setfuncs(L, functions, 0);
 }

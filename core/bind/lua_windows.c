@@ -133,7 +133,8 @@ static int list(lua_State *L) {
     }
     tl_windows *out = tl_push_windows(L);
     thole_error error;
-    if (thole_windows_list(tl_begin(L), clock, n, starts, finishes, labels, &out->windows, &error) != THOLE_OK)
+    if (thole_windows_list(tl_begin(L), clock, n, starts, finishes, labels, &out->windows, &error) !=
+        THOLE_OK)
         return tl_raise(L, &error, NULL);
     tl_windows_set_clock(out, clock);
     for (int i = -4; i <= -2; i++)
@@ -143,8 +144,11 @@ static int list(lua_State *L) {
 }
 
 void tl_open_windows(lua_State *L) {
-    static const luaL_Reg special[] = {{"__gc", close_windows}, {"__close", close_windows}, {"__len", count},
-                                       {"__tostring", text},    {NULL, NULL}};
+    static const luaL_Reg special[] = {{"__gc", close_windows},
+                                       {"__close", close_windows},
+                                       {"__len", count},
+                                       {"__tostring", text},
+                                       {NULL, NULL}};
     static const luaL_Reg methods[] = {{"close", close_windows}, {"each", each}, {NULL, NULL}};
     static const luaL_Reg functions[] = {{"sliding_windows", sliding}, {"list_windows", list}, {NULL, NULL}};
     tl_new_type(L, TL_WINDOWS, special, methods, field);

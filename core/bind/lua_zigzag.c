@@ -16,7 +16,8 @@ static void radius(lua_State *L, const tl_options *options, thole_zigzag_options
         out->radius = (uint32_t)tl_option_integer(L, options, "radius", 0, UINT32_MAX, 1);
     } else if (type != LUA_TNIL) {
         tl_option_fail(L, options, "radius", " is \"graph\" or a whole number of hops, not %s%s%s",
-                       type == LUA_TSTRING ? "\"" : "a ", type == LUA_TSTRING ? lua_tostring(L, -1) : lua_typename(L, type),
+                       type == LUA_TSTRING ? "\"" : "a ",
+                       type == LUA_TSTRING ? lua_tostring(L, -1) : lua_typename(L, type),
                        type == LUA_TSTRING ? "\"" : "");
     }
     lua_pop(L, 1);
@@ -30,7 +31,8 @@ static uint32_t dims(lua_State *L, const tl_options *options) {
         return 1u << 0 | 1u << 1;
     }
     if (type != LUA_TTABLE)
-        tl_option_fail(L, options, "dims", " is a list of dimensions, as in { 0, 1 }, not a %s", lua_typename(L, type));
+        tl_option_fail(L, options, "dims", " is a list of dimensions, as in { 0, 1 }, not a %s",
+                       lua_typename(L, type));
     size_t n = lua_rawlen(L, -1);
     for (size_t i = 0; i < n; i++) {
         int whole = 0;
@@ -56,7 +58,8 @@ static size_t ceiling(lua_State *L, const tl_options *options) {
 
 static void check_clocks(lua_State *L, const thole_network *net, const tl_windows *w) {
     const thole_clock *clock = thole_network_clock(net);
-    if (clock->kind != w->clock.kind || (clock->kind == THOLE_PLAIN && strcmp(clock->unit, w->clock.unit) != 0))
+    if (clock->kind != w->clock.kind ||
+        (clock->kind == THOLE_PLAIN && strcmp(clock->unit, w->clock.unit) != 0))
         tl_fail(L, "these windows are in other times than the network: make them from the same network");
 }
 
@@ -75,7 +78,8 @@ static int zigzag(lua_State *L) {
     wanted.block = (uint32_t)tl_option_integer(L, &options, "block", 1, UINT32_MAX, 0);
     size_t most = ceiling(L, &options);
     if (tl_option(L, &options, "windows") == LUA_TNIL)
-        tl_option_fail(L, &options, "windows", " is missing: make windows with thole.windows.sliding, list or by");
+        tl_option_fail(L, &options, "windows",
+                       " is missing: make windows with thole.windows.sliding, list or by");
     tl_windows *w = tl_check_windows(L, -1, "option \"windows\" of net:zigzag");
     check_clocks(L, net, w);
     thole_barcode **out = tl_push_barcode(L);

@@ -89,7 +89,8 @@ const char *tl_gate(lua_State *L, int index, const char *mode, const char *of) {
         return lua_tostring(L, -1);
     }
     if (!lua_toboolean(L, -2))
-        tl_fail(L, "%s", lua_type(L, -1) == LUA_TSTRING ? lua_tostring(L, -1) : "this path is not for recipes");
+        tl_fail(L, "%s",
+                lua_type(L, -1) == LUA_TSTRING ? lua_tostring(L, -1) : "this path is not for recipes");
     lua_pop(L, 2);
     lua_pushvalue(L, index);
     return path;
@@ -110,7 +111,8 @@ void tl_add_methods(lua_State *L, const char *type, const luaL_Reg *methods) {
     lua_pop(L, 1);
 }
 
-void tl_new_type(lua_State *L, const char *name, const luaL_Reg *special, const luaL_Reg *methods, lua_CFunction index) {
+void tl_new_type(lua_State *L, const char *name, const luaL_Reg *special, const luaL_Reg *methods,
+                 lua_CFunction index) {
     lua_pushlstring(L, name + strlen("thole."), strcspn(name, "@") - strlen("thole."));
     lua_insert(L, -2);
     push_methods(L, lua_tostring(L, -2));
@@ -122,6 +124,17 @@ void tl_new_type(lua_State *L, const char *name, const luaL_Reg *special, const 
     luaL_setfuncs(L, special, 0);
     lua_insert(L, -2);
     lua_setfield(L, -2, "__index");
+    lua_pop(L, 1);
+}
+
+void tl_add_fields(lua_State *L, const char *type, size_t n, const char *const *names) {
+    luaL_getsubtable(L, -1, "fields");
+    lua_createtable(L, (int)n, 0);
+    for (size_t i = 0; i < n; i++) {
+        lua_pushstring(L, names[i]);
+        lua_rawseti(L, -2, (lua_Integer)i + 1);
+    }
+    lua_setfield(L, -2, type);
     lua_pop(L, 1);
 }
 
@@ -148,7 +161,8 @@ int tl_no_field(lua_State *L, const char *what, int table, size_t n, const char 
         lua_pop(L, 1);
         const char *name = lua_tostring(L, -1);
         size_t i = n++;
-        for (; i > 0 && strcmp(names[i - 1], name) > 0; i--) /* the order of lua_next changes from run to run */
+        for (; i > 0 && strcmp(names[i - 1], name) > 0;
+             i--) /* the order of lua_next changes from run to run */
             names[i] = names[i - 1];
         names[i] = name;
     }
@@ -165,7 +179,8 @@ static int threads(lua_State *L) {
         int whole = 0;
         lua_Integer n = lua_type(L, 1) == LUA_TNUMBER ? lua_tointegerx(L, 1, &whole) : 0;
         if (!whole || n < 1 || n > 256)
-            return tl_fail(L, "thole.threads takes a whole number from 1 to 256, not %s", luaL_tolstring(L, 1, NULL));
+            return tl_fail(L, "thole.threads takes a whole number from 1 to 256, not %s",
+                           luaL_tolstring(L, 1, NULL));
         context->threads = (int)n;
     }
     lua_pushinteger(L, context->threads);

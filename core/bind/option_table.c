@@ -3,7 +3,8 @@
 
 #include "bind/bind.h"
 
-static int fail_at(lua_State *L, const tl_options *options, const char *name, const char *format, va_list list) {
+static int fail_at(lua_State *L, const tl_options *options, const char *name, const char *format,
+                   va_list list) {
     tl_where(L);
     lua_pushfstring(L, "option \"%s\" of %s", name, options->of);
     lua_pushvfstring(L, format, list);
@@ -24,7 +25,8 @@ static void refuse_unknown(lua_State *L, const tl_options *options, size_t n, co
     while (lua_next(L, options->index) != 0) {
         lua_pop(L, 1);
         if (lua_type(L, -1) != LUA_TSTRING)
-            tl_fail(L, "options of %s have names, as in { name = value }, not %s keys", options->of, luaL_typename(L, -1));
+            tl_fail(L, "options of %s have names, as in { name = value }, not %s keys", options->of,
+                    luaL_typename(L, -1));
         const char *key = lua_tostring(L, -1);
         size_t i = 0;
         while (i < n && strcmp(key, names[i]) != 0)
@@ -41,7 +43,8 @@ tl_options tl_options_at(lua_State *L, int index, const char *of, size_t n, cons
     if (lua_isnoneornil(L, index))
         return options;
     if (lua_type(L, index) != LUA_TTABLE)
-        tl_fail(L, "options of %s are a table, as in { name = value }, not a %s", of, luaL_typename(L, index));
+        tl_fail(L, "options of %s are a table, as in { name = value }, not a %s", of,
+                luaL_typename(L, index));
     options.index = lua_absindex(L, index);
     luaL_checkstack(L, 8, NULL);
     refuse_unknown(L, &options, n, names);
@@ -99,8 +102,8 @@ lua_Integer tl_option_integer(lua_State *L, const tl_options *options, const cha
     return value;
 }
 
-int tl_option_choice(lua_State *L, const tl_options *options, const char *name, size_t n, const char *const *names,
-                     int missing) {
+int tl_option_choice(lua_State *L, const tl_options *options, const char *name, size_t n,
+                     const char *const *names, int missing) {
     const char *text = tl_option_text(L, options, name, NULL);
     if (text == NULL)
         return missing;

@@ -18,7 +18,8 @@
 
 enum { BUFFER = 65536, MOST_NAME = 200, TRIES = 100 };
 
-/* fd is -1 once committed or thrown away. `part` is empty when the target is written directly (a device, a pipe). */
+/* fd is -1 once committed or thrown away. `part` is empty when the target is written directly (a device, a
+ * pipe). */
 typedef struct output {
     int fd;
     bool keeps_mode;
@@ -146,7 +147,8 @@ static int add(output *out, const char *bytes, size_t n) {
 static output *check_output(lua_State *L, const char *of) {
     output *out = luaL_testudata(L, 1, TL_OUTPUT);
     if (out == NULL)
-        tl_fail(L, "%s takes an output, not a %s: call it as out:write(…), with a colon", of, luaL_typename(L, 1));
+        tl_fail(L, "%s takes an output, not a %s: call it as out:write(…), with a colon", of,
+                luaL_typename(L, 1));
     if (out->fd < 0)
         tl_fail(L, "this output is closed: %s comes too late", of);
     return out;
@@ -223,7 +225,8 @@ static int discard(lua_State *L) {
 
 void tl_open_output(lua_State *L) {
     static const luaL_Reg special[] = {{"__gc", discard}, {"__close", discard}, {NULL, NULL}};
-    static const luaL_Reg methods[] = {{"close", discard}, {"commit", commit}, {"write", write_texts}, {NULL, NULL}};
+    static const luaL_Reg methods[] = {
+        {"close", discard}, {"commit", commit}, {"write", write_texts}, {NULL, NULL}};
     tl_new_type(L, TL_OUTPUT, special, methods, NULL);
     lua_pushcfunction(L, create);
     lua_setfield(L, -2, "create");

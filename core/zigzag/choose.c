@@ -56,7 +56,8 @@ static entry entry_of(const thole_barcode *barcode, size_t i) {
 
 /* Order chosen[0 .. n - 1] by lifespan; the sort is stable, so equal ones stay in order. */
 static bool longest_first(thole_memory *memory, const thole_barcode *barcode, size_t *chosen, size_t n) {
-    entry *at = tb_resize(memory, NULL, 0, n, sizeof *at), *scratch = tb_resize(memory, NULL, 0, n, sizeof *scratch);
+    entry *at = tb_resize(memory, NULL, 0, n, sizeof *at),
+          *scratch = tb_resize(memory, NULL, 0, n, sizeof *scratch);
     bool fine = at != NULL && scratch != NULL;
     if (fine) {
         for (size_t i = 0; i < n; i++)
@@ -76,8 +77,8 @@ void thole_chosen_release(thole_context *context, size_t *chosen, size_t n) {
     tb_free(context->memory, chosen, n + 1, sizeof *chosen);
 }
 
-thole_status thole_barcode_choose(thole_context *context, const thole_barcode *barcode, const thole_choice *choice,
-                                  size_t **out, size_t *n, thole_error *error) {
+thole_status thole_barcode_choose(thole_context *context, const thole_barcode *barcode,
+                                  const thole_choice *choice, size_t **out, size_t *n, thole_error *error) {
     size_t all = barcode->bars.n, passing = 0;
     for (size_t i = 0; i < all; i++)
         passing += passes(barcode, choice, i);
@@ -94,7 +95,8 @@ thole_status thole_barcode_choose(thole_context *context, const thole_barcode *b
             return tb_refused(context->memory, error, "the bars chosen");
         }
         kept = passing < choice->longest ? passing : choice->longest;
-        chosen = tb_resize(context->memory, chosen, passing + 1, kept + 1, sizeof *chosen); /* a shrink is not refused */
+        chosen = tb_resize(context->memory, chosen, passing + 1, kept + 1,
+                           sizeof *chosen); /* a shrink is not refused */
     }
     *out = chosen;
     *n = kept;
