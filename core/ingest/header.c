@@ -36,6 +36,8 @@ void ti_quote(const char *text, size_t length, char out[TI_QUOTED_SIZE]) {
                       : snprintf(to, 5, "\\x%02X", c);
             at++;
         } else {
+            if (c == '"')
+                *to++ = '\\';
             memcpy(to, text + at, bytes);
             to += bytes;
             at += bytes;

@@ -29,7 +29,8 @@ bool ti_header_has(const ti_header *header, const char *name);
 /* The separator among comma, semicolon and tab that a line outside quotes has most of; a comma when it has none. */
 char ti_separator_of(const char *line, size_t length);
 
-/* `text` in quotes for a message: cut after 60 characters, control characters and what is not UTF-8 written out. */
+/* `text` in quotes for a message: cut after 60 characters, quotes, control characters and what is not UTF-8
+ * written with a backslash. */
 enum { TI_QUOTED_SIZE = 280 };
 void ti_quote(const char *text, size_t length, char out[TI_QUOTED_SIZE]);
 
