@@ -336,6 +336,12 @@ falls apart, and which loops it has for how long.
 Topics of help: %s.]]):format(command_lines(), table.concat(topic_names(), ", "))
 end
 
+-- The name of what recipes can call that a word stands for: "net:keep", "thole.write" or "write".
+local function name_in_api(word)
+    local api = require "thole.api"
+    return api.find(word) and word or api.find("thole." .. word) and "thole." .. word or nil
+end
+
 local function show_help(host, words)
     if #words > 2 then
         return usage(host, "help takes one topic: %s", table.concat(topic_names(), ", "))
@@ -345,11 +351,25 @@ local function show_help(host, words)
     end
     for _, topic in ipairs(TOPICS) do
         if topic.name == words[2] then
-            print(type(topic.text) == "function" and topic.text() or topic.text)
+            if topic.show then
+                topic.show()
+            else
+                print(type(topic.text) == "function" and topic.text() or topic.text)
+            end
             return DONE
         end
     end
-    return usage(host, 'no help about "%s": %s', words[2], nearest.hint(words[2], topic_names()))
+    local name = name_in_api(words[2])
+    if name then
+        require("thole.help")(name)
+        return DONE
+    end
+    local names = topic_names()
+    local callable = require("thole.api").names()
+    local near = nearest.name(words[2], names) or nearest.name(words[2], callable)
+        or nearest.name("thole." .. words[2], callable)
+    return usage(host, 'no help about "%s": %s', words[2], near and ('did you mean "%s"?'):format(near)
+        or "topics are " .. table.concat(names, ", ") .. ", and the names that thole help functions lists")
 end
 
 local function show_version(host, words)
@@ -415,6 +435,7 @@ methods of texts.
 
 Confinement limits the harm that a recipe can do; it is no guarantee. It does not limit
 time or memory. Do not run recipes of people whom you do not trust at all.]] },
+    { name = "functions", show = function() require("thole.help")() end },
     { name = "exit", text = [[
 Exit codes of thole:
     0  done
