@@ -19,7 +19,7 @@ static thole_context context = {.memory = &memory, .threads = 1};
 #define ROLES .from = {"from", 0}, .to = {"to", 0}, .start = {"start", 0}, .finish = {"finish", 0}
 static const thole_contacts_options USUAL = {ROLES};
 
-static thole_network *read_bytes(const char *text, size_t length, const thole_contacts_options *options) {
+static inline thole_network *read_bytes(const char *text, size_t length, const thole_contacts_options *options) {
     thole_network *network = NULL;
     thole_error error;
     if (thole_read_contacts_text(&context, "log.csv", text, length, options, &network, &error) != THOLE_OK)
@@ -27,7 +27,7 @@ static thole_network *read_bytes(const char *text, size_t length, const thole_co
     return network;
 }
 
-static thole_network *read_text(const char *text, const thole_contacts_options *options) {
+static inline thole_network *read_text(const char *text, const thole_contacts_options *options) {
     return read_bytes(text, strlen(text), options);
 }
 
@@ -47,7 +47,7 @@ static inline void put(pad *p, const char *format, ...) {
 }
 
 /* Events, one a line: "from>to start finish name=value ...", then the columns' types, then what was counted. */
-static const char *describe(const thole_network *network, pad *p) {
+static inline const char *describe(const thole_network *network, pad *p) {
     static const char *const TYPE[] = {"integer", "real", "text"};
     const thole_account *account = thole_network_account(network);
     p->n = 0;
@@ -85,14 +85,14 @@ static const char *describe(const thole_network *network, pad *p) {
 }
 
 /* Read and compare with a description. */
-static void expect(const char *text, const thole_contacts_options *options, const char *wanted) {
+static inline void expect(const char *text, const thole_contacts_options *options, const char *wanted) {
     static pad p;
     thole_network *network = read_text(text, options);
     assert_string_equal(describe(network, &p), wanted);
     thole_network_release(network);
 }
 
-static int check_memory(void **state) {
+static inline int check_memory(void **state) {
     (void)state;
     return atomic_load(&memory.used) == 0 ? 0 : -1;
 }
