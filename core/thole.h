@@ -23,6 +23,7 @@
 #include "network/filter.h"
 #include "network/windows.h"
 #include "ingest/contacts.h"
+#include "complex/complex.h"
 #include "zigzag/zigzag.h"
 #include "zigzag/choose.h"
 #include "zigzag/carriers.h"

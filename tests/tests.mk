@@ -1,28 +1,53 @@
-# How the tests are built and run. Each tests/core/*.c, tests/oracle/*.c and
-# tests/reference/*.c is one cmocka program, linked to the static library, which also shows
-# the core's inner functions.
-TEST_SRC  := $(sort $(wildcard tests/core/*.c tests/oracle/test_*.c tests/reference/test_*.c))
-TEST_BIN  := $(TEST_SRC:%.c=$(BUILD)/%)
-TEST_HELP := $(sort $(wildcard tests/support/*.c))
-TEST_LIBS  = $(shell pkg-config --libs cmocka) -lm4ri -lcsv
+# How the tests are built and run. Each tests/core/test_*.c, tests/oracle/test_*.c and
+# tests/reference/test_*.c is one cmocka program, linked to the static library, which also shows
+# the core's inner functions. What runs, and in which order, is in tests/all.sh.
+TEST_SRC  := $(sort $(wildcard tests/core/test_*.c tests/oracle/test_*.c tests/reference/test_*.c))
+TEST_BIN  := $(TEST_SRC:%.c=$(BUILD)/%) $(BUILD)/tests/fuzz/replay
+TEST_HELP := $(patsubst %.c,$(BUILD)/%.o,$(sort $(wildcard tests/support/*.c)))
+TEST_LIBS  = $(shell pkg-config --libs cmocka 2>/dev/null) -lm4ri -lcsv
 
+$(BUILD)/tests/support/%.o: tests/support/%.c $(wildcard tests/support/*.h)
+	@mkdir -p $(@D)
+	$(CC) $(ALL_CFLAGS) -Itests -c $< -o $@
+$(BUILD)/tests/fuzz/replay: tests/fuzz/replay.c tests/fuzz/fuzz_contacts.c $(BUILD)/libthole.a
+	@mkdir -p $(@D)
+	$(CC) $(ALL_CFLAGS) -Itests -o $@ tests/fuzz/replay.c tests/fuzz/fuzz_contacts.c $(BUILD)/libthole.a $(CORE_LIBS) $(LDFLAGS)
 $(BUILD)/tests/%: tests/%.c $(TEST_HELP) $(BUILD)/libthole.a
 	@mkdir -p $(@D)
 	$(CC) $(ALL_CFLAGS) -Itests -o $@ $< $(TEST_HELP) $(BUILD)/libthole.a $(TEST_LIBS) $(CORE_LIBS) $(LDFLAGS)
 
-.PHONY: test-core
-test-core: $(TEST_BIN)
-	@for t in $(TEST_BIN); do echo "== $$t"; $$t || exit 1; done
+# Everything: installs what is missing, builds, runs, and counts. ONLY=core,lua,… runs some groups.
+.PHONY: test
+test: test-deps
+	@$(MAKE) --no-print-directory BUILD=$(BUILD) test-build
+	@LUA=$(LUA) sh tests/all.sh $(BUILD) $(ONLY)
 
-# The command: what it says and does, and recipes that try to get out of their confinement.
-.PHONY: test-cli
-test-cli: $(BUILD)/thole $(BUILD)/thole.so
-	$(LUA) tests/cli/cases.lua $(BUILD)
-	$(LUA) tests/cli/escapes.lua $(BUILD)
+.PHONY: test-build
+test-build: all $(TEST_BIN)
 
-# The Lua interface, in the stock interpreter and in the host.
-.PHONY: test-lua
-test-lua: $(BUILD)/thole $(BUILD)/thole.so
-	tests/lint/module.sh $(BUILD)
-	LUA_CPATH='$(abspath $(BUILD))/?.so' $(LUA) tests/lua/run.lua
-	$(BUILD)/thole run --trust tests/lua/run.lua
+# One group, already installed: make test-core, test-lua, test-cli, test-writers, test-browser, test-install.
+.PHONY: test-core test-lua test-cli test-writers test-browser test-install
+test-core test-lua test-cli test-writers test-browser test-install: test-build
+	@LUA=$(LUA) sh tests/all.sh $(BUILD) $(@:test-%=%)
+
+# Lint: the rules of DEVELOPERS.md, the Lua code, and a second compiler.
+.PHONY: lint
+lint: lint-deps
+	@$(MAKE) --no-print-directory BUILD=$(BUILD) all
+	@LUA=$(LUA) sh tests/all.sh $(BUILD) lint
+
+# Fuzz the reader for SECONDS, beginning with the corpus; new finds stay in the build folder.
+SECONDS ?= 60
+.PHONY: fuzz
+fuzz:
+	@mkdir -p $(BUILD)/fuzz/found
+	clang -std=c11 -D_POSIX_C_SOURCE=200809L -g -O1 -fsanitize=fuzzer,address,undefined -fno-sanitize-recover=undefined -Icore -Itests $(CORE_CFLAGS) \
+	  -o $(BUILD)/fuzz/contacts tests/fuzz/fuzz_contacts.c $(wildcard core/base/*.c core/clock/*.c core/network/*.c core/ingest/*.c) $(CORE_LIBS)
+	$(BUILD)/fuzz/contacts -max_total_time=$(SECONDS) -timeout=10 -rss_limit_mb=4096 -print_final_stats=1 $(BUILD)/fuzz/found tests/fuzz/corpus_contacts
+
+# Benches: ratios against a reference measured in the same run, and growth as the work grows.
+BENCH_BIN := $(patsubst %.c,$(BUILD)/%,$(sort $(wildcard tests/bench/bench_*.c)))
+.PHONY: bench
+bench: test-deps
+	@$(MAKE) --no-print-directory BUILD=$(BUILD) $(BENCH_BIN)
+	@for b in $(BENCH_BIN); do echo "== $${b##*/}"; $$b || exit 1; done

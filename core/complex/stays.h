@@ -6,9 +6,9 @@
 #define TC_STAYS_H
 
 #include "base/memory.h"
+#include "complex/complex.h"
 #include "network/network.h"
 #include "network/windows.h"
-#include "zigzag/zigzag.h"
 
 typedef struct tc_stay {
     uint32_t u, v;        /* nodes, u < v */

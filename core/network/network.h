@@ -118,6 +118,7 @@ THOLE_API uint32_t thole_network_nodes(const thole_network *network); /* nodes o
 THOLE_API const char *thole_network_node_name(const thole_network *network, uint32_t node, size_t *length);
 THOLE_API bool thole_network_find_node(const thole_network *network, const char *name, size_t length, uint32_t *node);
 
+/* Attribute columns, and the value of one in event i of this view (i < count). */
 THOLE_API uint32_t thole_network_columns(const thole_network *network);
 THOLE_API const char *thole_network_column_name(const thole_network *network, uint32_t column);
 THOLE_API thole_type thole_network_column_type(const thole_network *network, uint32_t column);

@@ -10,6 +10,7 @@
 #define TZ_VALUE_H
 
 #include "complex/cells.h"
+#include "zigzag/zigzag.h"
 
 /* How a bar begins or ends. */
 typedef enum tz_how { TZ_BY_ADDITION, TZ_BY_DELETION, TZ_REACHES /* it goes on beyond the other end of the stretch */ } tz_how;

@@ -74,7 +74,7 @@ static void every_allocation_fails(const judge_case *c, bool for_good, uint32_t 
         assert_int_equal(f.blocks, blocks);
     }
     printf("%ld failures of an allocation were told, %ld made good\n", failures, recovered);
-    assert_true(failures > 50);
+    assert_true(failures > 10 && failures + recovered > 100);
     assert_int_equal(thole_barcode_count(barcode), n);
     thole_carriers_release(carriers);
     thole_barcode_release(barcode);

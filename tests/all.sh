@@ -1,0 +1,85 @@
+#!/bin/sh
+# Run all groups of tests, or those named (core,lua,cli,writers,browser,install,lint), on what is built in BUILD.
+#
+#     tests/all.sh BUILD [GROUP[,GROUP…]]
+#
+# Each line is one program or script; a failing one does not hide the others. Closes with "N passed, N failed".
+set -u
+build=${1:?build folder}
+groups=${2:-core,lua,cli,writers,browser,install}
+lua=${LUA:-lua5.4}
+logs=$build/test-logs
+mkdir -p "$logs"
+passed=0
+failed=0
+
+# try NAME COMMAND...: run it, keep what it says, show the end of it when it fails.
+try() {
+    name=$1
+    shift
+    log=$logs/$(printf '%s' "$name" | tr ' /' '__').log
+    began=$(date +%s)
+    if "$@" >"$log" 2>&1 </dev/null; then
+        passed=$((passed + 1))
+        echo "ok      $name ($(($(date +%s) - began)) s)"
+    else
+        failed=$((failed + 1))
+        echo "FAILED  $name: the end of $log:"
+        tail -n 40 "$log" | sed 's/^/        /'
+    fi
+}
+
+# Nothing to run is a failure: a group that lost its files must not pass.
+some() {
+    [ -e "$1" ] || { failed=$((failed + 1)); echo "FAILED  nothing matches $1"; return 1; }
+}
+
+core() {
+    for source in tests/core/test_*.c tests/oracle/test_*.c tests/reference/test_*.c; do
+        some "$source" && try "${source%.c}" "$build/${source%.c}"
+    done
+    try "tests/fuzz corpus" "$build/tests/fuzz/replay" tests/fuzz/corpus_contacts
+}
+
+lua_group() {
+    try "module's needs and exports" sh tests/lint/module.sh "$build"
+    try "Lua interface in $lua" env LUA_CPATH="$(cd "$build" && pwd)/?.so" "$lua" tests/lua/run.lua
+    try "Lua interface in the host" "$build/thole" run --trust tests/lua/run.lua
+}
+
+cli() {
+    try "command line" "$lua" tests/cli/cases.lua "$build"
+    try "escapes from confinement" "$lua" tests/cli/escapes.lua "$build"
+    try "every allocation of a recipe fails" sh tests/cli/allocations.sh "$build"
+}
+
+writers() {
+    for script in tests/writers/test_*.lua; do
+        some "$script" && try "${script%.lua}" env TZ=UTC "$lua" "$script" "$build"
+    done
+}
+
+browser() { try "reports and pictures in a browser" sh tests/browser/run.sh "$build"; }
+
+install_group() { try "installed library, module and command" sh tests/lint/install.sh "$build"; }
+
+lint() {
+    for script in tests/lint/*.lua; do
+        some "$script" && try "$script" "$lua" "$script"
+    done
+    try "module's needs and exports" sh tests/lint/module.sh "$build"
+    try "library's symbols" sh tests/lint/library.sh "$build"
+    try "luacheck" luacheck -q lua recipes tests core/bind/embed.lua
+    try "cppcheck" sh tests/lint/cppcheck.sh
+    try "second compiler" sh tests/lint/second_compiler.sh
+}
+
+for group in $(echo "$groups" | tr ',' ' '); do
+    case $group in
+    core | cli | writers | browser | lint) "$group" ;;
+    lua | install) "${group}_group" ;;
+    *) echo "unknown group $group" >&2; exit 2 ;;
+    esac
+done
+echo "$passed passed, $failed failed"
+[ "$failed" -eq 0 ] && [ "$passed" -gt 0 ]
