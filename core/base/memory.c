@@ -1,14 +1,44 @@
 /* Allocation through one interface, counted, with a ceiling. */
+#if defined(__linux__)
+#define _DEFAULT_SOURCE /* madvise */
+#endif
 #include "base/memory.h"
 
 #include <stdlib.h>
+#if defined(__linux__)
+#include <sys/mman.h>
+#endif
 
-static void *by_library(void *block, size_t new_bytes) {
+/* Large new blocks ask for large pages, where the system has them: the first touch of a page is dear, above all on
+ * virtual machines (measured on one: 13 us for each 4 KiB, 0.3 us with large pages). Only an optimisation; large
+ * blocks that grow stay as they are, because moving large pages costs more than it saves. */
+static void *new_large(size_t bytes) {
+#if defined(MADV_HUGEPAGE)
+    static const size_t PAGE = (size_t)2 << 20;
+    size_t rounded = (bytes + PAGE - 1) / PAGE * PAGE; /* bytes <= PTRDIFF_MAX */
+    void *block = aligned_alloc(PAGE, rounded);
+    if (block != NULL)
+        (void)madvise(block, rounded, MADV_HUGEPAGE);
+    return block;
+#else
+    return malloc(bytes);
+#endif
+}
+
+static void *by_library(void *block, size_t old_bytes, size_t new_bytes) {
+    enum { LARGE = 4 << 20 };
     if (new_bytes == 0) {
         free(block);
         return NULL;
     }
-    return realloc(block, new_bytes);
+    if (new_bytes < LARGE || old_bytes > new_bytes / 4)
+        return realloc(block, new_bytes);
+    void *fresh = new_large(new_bytes);
+    if (fresh != NULL && block != NULL) {
+        memcpy(fresh, block, old_bytes);
+        free(block);
+    }
+    return fresh;
 }
 
 /* Add to `used` unless that passes the ceiling. */
@@ -38,7 +68,7 @@ void *tb_resize(thole_memory *memory, void *block, size_t old_n, size_t new_n, s
             return NULL;
     }
     void *fresh = memory->resize != NULL ? memory->resize(memory->user, block, old_bytes, new_bytes)
-                                         : by_library(block, new_bytes);
+                                         : by_library(block, old_bytes, new_bytes);
     if (new_bytes > old_bytes) {
         if (fresh == NULL)
             atomic_fetch_sub_explicit(&memory->used, new_bytes - old_bytes, memory_order_relaxed);

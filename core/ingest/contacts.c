@@ -9,11 +9,12 @@
 #include "ingest/faults.h"
 #include "ingest/recent.h"
 #include "ingest/times.h"
+#include "network/expect.h"
 
 enum { FROM, TO, START, FINISH, DURATION, ROLES };
 static const char *const ROLE[ROLES] = {"from", "to", "start", "finish", "duration"};
 static const size_t ABSENT = SIZE_MAX;
-enum { ROWS_BEFORE_RECENT = 100 }; /* a short file does not need it */
+enum { MANY_ROWS = 1000 };
 
 typedef struct reader {
     thole_context *context;
@@ -316,13 +317,26 @@ static thole_status read_finish(reader *r, thole_event *event, ti_time *finish, 
 
 /* ---- rows ---------------------------------------------------------------- */
 
+/* After some rows: what makes many rows fast. The rows so far tell how many there will be. */
+static thole_status expect_more(reader *r) {
+    r->recent = tb_new(r->context->memory, 1, sizeof *r->recent);
+    if (r->recent == NULL)
+        return tb_refused(r->context->memory, r->error, "the names of nodes");
+    double share = ti_source_share(r->source), come = (double)(r->rows.passed + r->rows.end);
+    double taken = (double)(r->rows.passed + r->rows.begin), rows = come / share / taken * MANY_ROWS * 1.02;
+    if (share > 0.0 && rows < 4e9)
+        tn_builder_expect(r->builder, (size_t)rows);
+    return THOLE_OK;
+}
+
 static thole_status store(reader *r, thole_event event) {
     const ti_field *from = field_of(r, FROM), *to = field_of(r, TO);
     bool kept = false;
     bool in_block = !r->rows.quoted; /* which has a margin */
-    if (r->recent == NULL && r->stored++ == ROWS_BEFORE_RECENT && (r->recent = tb_new(r->context->memory, 1, sizeof *r->recent)) == NULL)
-        return tb_refused(r->context->memory, r->error, "the names of nodes");
-    thole_status status = ti_recent_node(r->recent, r->builder, from->at, from->length, in_block, &event.from, r->error);
+    thole_status status = THOLE_OK;
+    if (r->recent == NULL && ++r->stored == MANY_ROWS && (status = expect_more(r)) != THOLE_OK)
+        return status;
+    status = ti_recent_node(r->recent, r->builder, from->at, from->length, in_block, &event.from, r->error);
     if (status == THOLE_OK)
         status = ti_recent_node(r->recent, r->builder, to->at, to->length, in_block, &event.to, r->error);
     if (status == THOLE_OK)

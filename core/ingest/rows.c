@@ -54,6 +54,7 @@ static thole_status refill(ti_rows *rows, thole_error *error) {
     size_t kept = rows->end - rows->begin;
     if (rows->begin > 0 && kept > 0)
         memmove(rows->block, rows->block + rows->begin, kept);
+    rows->passed += rows->begin;
     rows->begin = 0;
     rows->end = kept;
     if (kept > rows->cap / 2 || rows->cap == 0) {

@@ -49,6 +49,7 @@ typedef struct ti_rows {
     /* inner */
     char *block; /* cap bytes, and then a margin for reading ahead */
     size_t first_cap, cap, begin, end;
+    uint64_t passed; /* bytes before the block */
     size_t field_cap;
     uint64_t next_line;
     bool ended;   /* the source is at its end */

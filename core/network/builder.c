@@ -3,6 +3,7 @@
 #include <stdio.h>
 
 #include "network/arrange.h"
+#include "network/expect.h"
 #include "clock/decimal.h"
 #include "network/store.h"
 
@@ -50,6 +51,11 @@ void thole_builder_source(thole_builder *builder, const char *name) {
 
 static thole_status refused(thole_builder *builder, thole_error *error) {
     return tb_refused(builder->memory, error, "a network");
+}
+
+void tn_builder_expect(thole_builder *b, size_t events) {
+    if (events <= TN_MOST_EVENTS)
+        (void)TB_VEC_RESERVE(b->memory, &b->store->events, events);
 }
 
 /* ---- columns ---------------------------------------------------------------- */
