@@ -33,6 +33,20 @@ void *tb_arena_fill(tb_arena *arena, size_t n, size_t item, int fill) {
     return block;
 }
 
+bool tb_arena_adopt(tb_arena *arena, void **at, size_t *n, size_t *cap, size_t item) {
+    if (*at != NULL && !TB_VEC_PUSH(arena->memory, &arena->adopted, ((tb_adopted){*at, *cap * item})))
+        return false;
+    *at = NULL;
+    *n = *cap = 0;
+    return true;
+}
+
+static void give_back(tb_arena *arena) {
+    for (size_t i = 0; i < arena->adopted.n; i++)
+        tb_free(arena->memory, arena->adopted.at[i].block, arena->adopted.at[i].bytes, 1);
+    arena->adopted.n = 0;
+}
+
 static void drop(tb_arena *arena, tb_chunk *until) {
     while (arena->chunks != until) {
         tb_chunk *older = arena->chunks->older;
@@ -44,6 +58,7 @@ static void drop(tb_arena *arena, tb_chunk *until) {
 void tb_arena_reset(tb_arena *arena) {
     /* One chunk as large as all of them serves the next task of the same size without going back to the
      * system, which is what costs; a huge task does not hold its memory through small ones. */
+    give_back(arena);
     size_t total = 0;
     for (tb_chunk *chunk = arena->chunks; chunk != NULL; chunk = chunk->older)
         total += chunk->bytes;
@@ -55,4 +70,8 @@ void tb_arena_reset(tb_arena *arena) {
         *arena->chunks = (tb_chunk){.older = NULL, .bytes = total};
 }
 
-void tb_arena_clear(tb_arena *arena) { drop(arena, NULL); }
+void tb_arena_clear(tb_arena *arena) {
+    give_back(arena);
+    TB_VEC_CLEAR(arena->memory, &arena->adopted);
+    drop(arena, NULL);
+}

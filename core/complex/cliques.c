@@ -127,23 +127,11 @@ static bool extend(growth *g, uint32_t cell, uint32_t run_end) {
     return true;
 }
 
+/* The vectors become the cells' arrays as they are: they can be most of the memory there is. */
 static bool keep(growth *g, tc_cells *out) {
     tb_arena *arena = g->work->arena;
-    size_t wide = (size_t)(g->d + 1) * g->first.n;
-    out->n = (uint32_t)g->first.n;
-    out->first = TB_TAKE(arena, uint32_t, out->n);
-    out->last = TB_TAKE(arena, uint32_t, out->n);
-    out->face = TB_TAKE(arena, uint32_t, wide);
-    out->node = TB_TAKE(arena, uint32_t, wide);
-    if (out->first == NULL || out->last == NULL || out->face == NULL || out->node == NULL)
-        return false;
-    if (out->n == 0)
-        return true;
-    memcpy(out->first, g->first.at, out->n * sizeof(uint32_t));
-    memcpy(out->last, g->last.at, out->n * sizeof(uint32_t));
-    memcpy(out->face, g->face.at, wide * sizeof(uint32_t));
-    memcpy(out->node, g->node.at, wide * sizeof(uint32_t));
-    return true;
+    *out = (tc_cells){(uint32_t)g->first.n, g->first.at, g->last.at, g->face.at, g->node.at};
+    return TB_ADOPT(arena, &g->first) && TB_ADOPT(arena, &g->last) && TB_ADOPT(arena, &g->face) && TB_ADOPT(arena, &g->node);
 }
 
 thole_status tc_cliques(tc_work *work, tc_block *block, int d) {

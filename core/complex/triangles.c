@@ -41,17 +41,31 @@ static bool list_pairs(tc_work *work, const tc_cells *nodes, const tc_cells *lin
     return true;
 }
 
-typedef struct triangle {
-    uint32_t first, last, face[3];
-} triangle;
-
 typedef struct search {
     tc_work *work;
     const tc_block *block;
     const tc_cells *links;
     pairs pairs;
-    TB_VEC(triangle) found;
+    TB_VEC(uint32_t) first;
+    TB_VEC(uint32_t) last;
+    TB_VEC(uint32_t) face; /* three a triangle */
 } search;
+
+static bool emit(search *s, uint32_t lo, uint32_t hi, uint32_t i, uint32_t j, uint32_t k) {
+    thole_memory *memory = s->work->context->memory;
+    size_t n = s->first.n;
+    if (!TB_VEC_RESERVE(memory, &s->first, n + 1) || !TB_VEC_RESERVE(memory, &s->last, n + 1) ||
+        !TB_VEC_RESERVE(memory, &s->face, 3 * (n + 1)))
+        return false;
+    s->first.at[n] = lo;
+    s->last.at[n] = hi;
+    s->face.at[3 * n] = i;
+    s->face.at[3 * n + 1] = j;
+    s->face.at[3 * n + 2] = k;
+    s->first.n = s->last.n = n + 1;
+    s->face.n = 3 * (n + 1);
+    return true;
+}
 
 /* The common part of the stays of three pairs: all three lists ascend and do not overlap themselves. */
 static bool meet(search *s, uint32_t p, uint32_t q, uint32_t r) {
@@ -61,7 +75,7 @@ static bool meet(search *s, uint32_t p, uint32_t q, uint32_t r) {
         uint32_t lo = first[i] > first[j] ? first[i] : first[j], hi = last[i] < last[j] ? last[i] : last[j];
         lo = first[k] > lo ? first[k] : lo;
         hi = last[k] < hi ? last[k] : hi;
-        if (lo <= hi && !TB_VEC_PUSH(s->work->context->memory, &s->found, ((triangle){lo, hi, {i, j, k}})))
+        if (lo <= hi && !emit(s, lo, hi, i, j, k))
             return false;
         if (last[i] == hi)
             i++;
@@ -116,27 +130,19 @@ static bool triangles_at(search *s, uint32_t u, uint32_t *mark) {
     return fine;
 }
 
+/* The vectors become the cells' arrays; nodes are only needed where cliques are made of triangles. */
 static bool keep_found(search *s, tc_cells *out, bool with_nodes) {
     tb_arena *arena = s->work->arena;
-    out->n = (uint32_t)s->found.n;
-    out->first = TB_TAKE(arena, uint32_t, out->n);
-    out->last = TB_TAKE(arena, uint32_t, out->n);
-    out->face = TB_TAKE(arena, uint32_t, 3 * (size_t)out->n);
-    out->node = with_nodes ? TB_TAKE(arena, uint32_t, 3 * (size_t)out->n) : NULL;
-    if (out->first == NULL || out->last == NULL || out->face == NULL || (with_nodes && out->node == NULL))
+    *out = (tc_cells){(uint32_t)s->first.n, s->first.at, s->last.at, s->face.at, NULL};
+    if (with_nodes && (out->node = TB_TAKE(arena, uint32_t, 3 * (size_t)out->n)) == NULL)
         return false;
-    for (uint32_t i = 0; i < out->n; i++) {
-        const triangle *t = &s->found.at[i];
-        out->first[i] = t->first;
-        out->last[i] = t->last;
-        memcpy(&out->face[3 * (size_t)i], t->face, sizeof t->face);
-        if (with_nodes) {
-            out->node[3 * (size_t)i] = s->links->node[2 * (size_t)t->face[0]];
-            out->node[3 * (size_t)i + 1] = s->links->node[2 * (size_t)t->face[0] + 1];
-            out->node[3 * (size_t)i + 2] = s->links->node[2 * (size_t)t->face[1] + 1];
-        }
+    for (size_t i = 0; with_nodes && i < out->n; i++) {
+        const uint32_t *face = &out->face[3 * i], *node = s->links->node;
+        out->node[3 * i] = node[2 * (size_t)face[0]];
+        out->node[3 * i + 1] = node[2 * (size_t)face[0] + 1];
+        out->node[3 * i + 2] = node[2 * (size_t)face[1] + 1];
     }
-    return true;
+    return TB_ADOPT(arena, &s->first) && TB_ADOPT(arena, &s->last) && TB_ADOPT(arena, &s->face);
 }
 
 thole_status tc_triangles(tc_work *work, tc_block *block) {
@@ -151,10 +157,12 @@ thole_status tc_triangles(tc_work *work, tc_block *block) {
             status = thole_fail(work->error, THOLE_CANCELLED, "stopped while finding triangles");
             break;
         }
-        fine = triangles_at(&s, u, mark) && s.found.n < UINT32_MAX / 4;
+        fine = triangles_at(&s, u, mark) && s.first.n < UINT32_MAX / 4;
     }
     if (status == THOLE_OK && !(fine = fine && keep_found(&s, &block->cells[2], block->top > 2)))
-        status = tc_cells_refused(work, block, 2, s.found.n);
-    TB_VEC_CLEAR(memory, &s.found);
+        status = tc_cells_refused(work, block, 2, s.first.n);
+    TB_VEC_CLEAR(memory, &s.first);
+    TB_VEC_CLEAR(memory, &s.last);
+    TB_VEC_CLEAR(memory, &s.face);
     return status;
 }
