@@ -1,11 +1,11 @@
-/* Sorting events by spreading them over buckets of time, and each bucket again, until few are left in one.
+/* Sorting events by spreading them over buckets of time, and each bucket again, until few are left in one. When all
+ * starts in a bucket are equal, the finishes are spread, and then the nodes.
  *
- * Logs are mostly in order of time already: then an event moves only a little, and the copies stay in the cache. When all
- * starts in a bucket are equal, the finishes are spread, and then the nodes. Every pass keeps the order of
- * equals. */
+ * Logs are mostly in order of time already, or nearly: then they are sorted piece by piece, each merged into those before
+ * it, with a small copy instead of one of everything. Every pass keeps the order of equals. */
 #include "network/arrange.h"
 
-enum { FEW = 24, AIM = 8, MOST_BITS = 12, KEYS = 4 };
+enum { FEW = 24, AIM = 8, MOST_BITS = 12, KEYS = 4, NEAR = 1 << 15 };
 
 static const uint64_t SIGN = UINT64_C(1) << 63;
 
@@ -112,25 +112,91 @@ static void spread(copies *c, int in, size_t first, size_t n, int key) {
             spread(c, 1 - in, first + from, begin[b] - from, shift == 0 ? key + 1 : key);
 }
 
+/* ---- logs that are nearly in order ---------------------------------------- */
+
+/* Merge places mid .. end - 1, in order, into the places before them, in order too, when they reach back at most NEAR
+ * places. Copy 1 has room for NEAR. */
+static bool merge_back(copies *c, size_t mid, size_t end) {
+    thole_event *events = c->events[0], *left = c->events[1];
+    uint32_t *rows = c->rows[0], *left_rows = c->rows[1];
+    size_t low = mid > NEAR ? mid - NEAR : 0, high = mid;
+    if (low > 0 && tn_event_order(&events[low - 1], &events[mid]) > 0)
+        return false;
+    while (low < high) { /* the first place that comes after what is merged in */
+        size_t middle = low + (high - low) / 2;
+        if (tn_event_order(&events[middle], &events[mid]) <= 0)
+            low = middle + 1;
+        else
+            high = middle;
+    }
+    size_t n = mid - low, i = 0, j = mid;
+    memcpy(left, events + low, n * sizeof *left);
+    if (rows != NULL)
+        memcpy(left_rows, rows + low, n * sizeof *rows);
+    for (size_t to = low; i < n; to++) {
+        bool take_left = j == end || tn_event_order(&left[i], &events[j]) <= 0;
+        events[to] = take_left ? left[i] : events[j];
+        if (rows != NULL)
+            rows[to] = take_left ? left_rows[i] : rows[j];
+        i += take_left;
+        j += !take_left;
+    }
+    return true;
+}
+
+/* Sort by pieces of NEAR events, which stay in the cache, each merged into those before it. False when the events are
+ * further from their order than that; they are in some other order then, with equals still in theirs. */
+static bool arrange_near(copies *c, size_t n) {
+    for (size_t first = 0; first < n; first += NEAR) {
+        size_t count = n - first < NEAR ? n - first : NEAR;
+        copies piece = *c;
+        piece.events[0] += first;
+        if (piece.rows[0] != NULL)
+            piece.rows[0] += first;
+        spread(&piece, 0, 0, count, 0);
+        if (first > 0 && !merge_back(c, first, first + count))
+            return false;
+    }
+    return true;
+}
+
+/* Make copy 1 of n places. */
+static bool make_copy(copies *c, thole_memory *memory, size_t n) {
+    c->events[1] = tb_resize(memory, NULL, 0, n, sizeof *c->events[1]);
+    c->rows[1] = c->rows[0] != NULL ? tb_resize(memory, NULL, 0, n, sizeof *c->rows[1]) : NULL;
+    return c->events[1] != NULL && (c->rows[0] == NULL || c->rows[1] != NULL);
+}
+
+static void drop_copy(copies *c, thole_memory *memory, size_t n) {
+    tb_free(memory, c->events[1], n, sizeof *c->events[1]);
+    tb_free(memory, c->rows[1], n, sizeof *c->rows[1]);
+}
+
 bool tn_arrange(thole_memory *memory, thole_event *events, size_t n, bool with_rows, uint32_t **row) {
     size_t i = 1;
     while (i < n && tn_event_order(&events[i - 1], &events[i]) <= 0)
         i++;
     if (i >= n)
         return true;
-    copies c = {.events = {events, tb_resize(memory, NULL, 0, n, sizeof *events)}};
-    bool fine = c.events[1] != NULL;
-    for (int k = 0; k < 2 && with_rows && fine; k++)
-        fine = (c.rows[k] = tb_resize(memory, NULL, 0, n, sizeof *c.rows[k])) != NULL;
-    if (fine) {
-        for (i = 0; with_rows && i < n; i++)
+    copies c = {.events = {events, NULL}};
+    size_t small = n < NEAR ? n : NEAR;
+    if (with_rows) {
+        if ((c.rows[0] = tb_resize(memory, NULL, 0, n, sizeof *c.rows[0])) == NULL)
+            return false;
+        for (i = 0; i < n; i++)
             c.rows[0][i] = (uint32_t)i;
-        spread(&c, 0, 0, n, 0);
-        *row = c.rows[0];
-    } else {
-        tb_free(memory, c.rows[0], n, sizeof *c.rows[0]);
     }
-    tb_free(memory, c.rows[1], n, sizeof *c.rows[1]);
-    tb_free(memory, c.events[1], n, sizeof *events);
+    bool fine = make_copy(&c, memory, small), done = fine && arrange_near(&c, n);
+    drop_copy(&c, memory, small);
+    if (fine && !done) {
+        fine = make_copy(&c, memory, n);
+        if (fine)
+            spread(&c, 0, 0, n, 0);
+        drop_copy(&c, memory, n);
+    }
+    if (fine)
+        *row = c.rows[0];
+    else
+        tb_free(memory, c.rows[0], n, sizeof *c.rows[0]);
     return fine;
 }

@@ -10,7 +10,7 @@ int tn_event_order(const thole_event *a, const thole_event *b);
 
 /* Sort events so, equal ones by the order they are in. *row (not set when the events are in order already, so
  * initialise it to NULL) gets n numbers: the places they had before, when `with_rows`; tb_free it. False when memory
- * is refused, with the events untouched. Takes time linear in n but for long runs of close times far apart. */
+ * is refused, with the events in some order. Takes time linear in n but for long runs of close times far apart. */
 bool tn_arrange(thole_memory *memory, thole_event *events, size_t n, bool with_rows, uint32_t **row);
 
 #endif
