@@ -33,13 +33,15 @@ thole_context *tl_context(lua_State *L);
 #define TL_CHOSEN "thole.chosen@1"
 #define TL_BLOCK "thole.block@1"
 #define TL_BUILD "thole.build@1"
+#define TL_ZONE "thole.zone@1"
 
 /* ---- raise.c: errors ----------------------------------------------------------------------------- */
 
 /* Push "recipe.lua:12: " for the innermost line that runs and is not of Thole's own Lua half, or "". */
 void tl_where(lua_State *L);
 
-/* Raise a message with that position; formats as lua_pushfstring. */
+/* Raise a message with that position; formats as lua_pushfstring. What raises is an int so that one can
+ * return it. */
 int tl_fail(lua_State *L, const char *format, ...);
 
 /* Raise what the core said, after `before` ("event 3: "; NULL for nothing). */
@@ -75,6 +77,12 @@ void tl_add_methods(lua_State *L, const char *type, const luaL_Reg *methods);
 /* Note the names of the fields of that type, for those who compare the description with what there is: into
  * the table "fields" of the native functions on the top: [-0, +0, raises]. */
 void tl_add_fields(lua_State *L, const char *type, size_t n, const char *const *names);
+
+/* Make the metatable of a type that recipes never see, which only needs to be collected: [-0, +0, raises]. */
+void tl_new_owner(lua_State *L, const char *name, lua_CFunction collect);
+
+/* How much room to ask of Lua at once for a list of n items: a table may be larger than an int says. */
+static inline int tl_room(size_t n) { return n < 1 << 24 ? (int)n : 1 << 24; }
 
 /* In an __index: the value for the key at 2 from the methods in upvalue 1, pushed, true; else false. */
 bool tl_find_method(lua_State *L);
@@ -166,6 +174,7 @@ void *tl_push_block(lua_State *L, size_t n, size_t item, const char *what);
 void tl_free_block(lua_State *L, int index);
 
 /* What each file puts into the table of native functions on the top of the stack: [-0, +0, raises]. */
+void tl_open_block(lua_State *L);
 void tl_open_network(lua_State *L);
 void tl_open_build(lua_State *L);
 void tl_open_contacts(lua_State *L);

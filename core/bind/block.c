@@ -18,11 +18,7 @@ static int collect_block(lua_State *L) {
 void *tl_push_block(lua_State *L, size_t n, size_t item, const char *what) {
     block *b = lua_newuserdatauv(L, sizeof *b, 0);
     *b = (block){NULL, n, item};
-    if (luaL_newmetatable(L, TL_BLOCK)) {
-        lua_pushcfunction(L, collect_block);
-        lua_setfield(L, -2, "__gc");
-    }
-    lua_setmetatable(L, -2);
+    luaL_setmetatable(L, TL_BLOCK);
     if (n == 0)
         return NULL;
     thole_context *context = tl_begin(L);
@@ -42,3 +38,5 @@ void tl_free_block(lua_State *L, int index) {
     b->at = NULL;
     tb_free(tl_context(L)->memory, at, b->n, b->item);
 }
+
+void tl_open_block(lua_State *L) { tl_new_owner(L, TL_BLOCK, collect_block); }

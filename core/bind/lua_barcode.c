@@ -18,9 +18,11 @@ thole_barcode **tl_push_barcode(lua_State *L) {
 
 static thole_barcode *check_barcode(lua_State *L, int index, const char *of) {
     barcode *b = luaL_testudata(L, index, TL_BARCODE);
-    if (b == NULL)
+    if (b == NULL) {
         tl_fail(L, "%s takes a barcode, not a %s: call it with a colon, as in bars:each()", of,
                 luaL_typename(L, index));
+        return NULL;
+    }
     if (b->barcode == NULL)
         tl_fail(L, "this barcode is closed: %s comes too late", of);
     return b->barcode;
@@ -202,11 +204,7 @@ static chosen *push_chosen(lua_State *L, const thole_barcode *b, int index, cons
     thole_choice choice = choice_of(L, index, b, of);
     chosen *c = lua_newuserdatauv(L, sizeof *c, 0);
     *c = (chosen){NULL, 0};
-    if (luaL_newmetatable(L, TL_CHOSEN)) {
-        lua_pushcfunction(L, drop_chosen);
-        lua_setfield(L, -2, "__gc");
-    }
-    lua_setmetatable(L, -2);
+    luaL_setmetatable(L, TL_CHOSEN);
     thole_error error;
     if (thole_barcode_choose(tl_begin(L), b, &choice, &c->bars, &c->n, &error) != THOLE_OK)
         tl_raise(L, &error, NULL);
@@ -267,7 +265,7 @@ static int betti(lua_State *L) {
     thole_error error;
     if (thole_barcode_betti(tl_begin(L), b, (uint32_t)dim, numbers, &error) != THOLE_OK)
         return tl_raise(L, &error, NULL);
-    lua_createtable(L, (int)(positions / step + 1), 0);
+    lua_createtable(L, tl_room(positions / step + 1), 0);
     for (size_t p = 0; p < positions; p += step) {
         lua_pushinteger(L, (lua_Integer)numbers[p]);
         lua_rawseti(L, -2, (lua_Integer)(p / step) + 1);
@@ -363,5 +361,6 @@ void tl_open_barcode(lua_State *L) {
     static const luaL_Reg methods[] = {{"betti", betti}, {"close", close_barcode}, {"count", count},
                                        {"each", each},   {"text", exact_text},     {NULL, NULL}};
     tl_new_type(L, TL_BARCODE, special, methods, field);
+    tl_new_owner(L, TL_CHOSEN, drop_chosen);
     tl_add_fields(L, "barcode", FIELD_COUNT, FIELDS);
 }

@@ -18,11 +18,7 @@ static int drop_builder(lua_State *L) {
 static thole_builder **push_builder(lua_State *L) {
     thole_builder **builder = lua_newuserdatauv(L, sizeof *builder, 0);
     *builder = NULL;
-    if (luaL_newmetatable(L, TL_BUILD)) {
-        lua_pushcfunction(L, drop_builder);
-        lua_setfield(L, -2, "__gc");
-    }
-    lua_setmetatable(L, -2);
+    luaL_setmetatable(L, TL_BUILD);
     return builder;
 }
 
@@ -245,10 +241,7 @@ static int drop_zone(lua_State *L) {
 static thole_zone **push_zone(lua_State *L) {
     thole_zone **zone = lua_newuserdatauv(L, sizeof *zone, 0);
     *zone = NULL;
-    lua_createtable(L, 0, 1);
-    lua_pushcfunction(L, drop_zone);
-    lua_setfield(L, -2, "__gc");
-    lua_setmetatable(L, -2);
+    luaL_setmetatable(L, TL_ZONE);
     return zone;
 }
 
@@ -319,6 +312,8 @@ static int network(lua_State *L) {
 }
 
 void tl_open_build(lua_State *L) {
+    tl_new_owner(L, TL_BUILD, drop_builder);
+    tl_new_owner(L, TL_ZONE, drop_zone);
     lua_pushcfunction(L, network);
     lua_setfield(L, -2, "network");
 }

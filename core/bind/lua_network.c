@@ -18,9 +18,11 @@ void tl_network_made(lua_State *L, size_t bytes) { tl_burden(L, bytes); }
 
 thole_network *tl_check_network(lua_State *L, int index, const char *of) {
     network *n = luaL_testudata(L, index, TL_NETWORK);
-    if (n == NULL)
+    if (n == NULL) {
         tl_fail(L, "%s takes a network, not a %s%s", of, luaL_typename(L, index),
                 strncmp(of, "net:", 4) == 0 ? ": call it with a colon, as in net:summary()" : "");
+        return NULL;
+    }
     if (n->network == NULL)
         tl_fail(L, "this network is closed: %s comes too late", of);
     return n->network;

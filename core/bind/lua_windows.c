@@ -18,9 +18,11 @@ void tl_windows_set_clock(tl_windows *windows, const thole_clock *clock) {
 
 tl_windows *tl_check_windows(lua_State *L, int index, const char *of) {
     tl_windows *w = luaL_testudata(L, index, TL_WINDOWS);
-    if (w == NULL)
+    if (w == NULL) {
         tl_fail(L, "%s takes windows, not a %s: make them with thole.windows.sliding, list or by", of,
                 luaL_typename(L, index));
+        return NULL;
+    }
     if (w->windows == NULL)
         tl_fail(L, "these windows are closed: %s comes too late", of);
     return w;

@@ -138,6 +138,13 @@ void tl_add_fields(lua_State *L, const char *type, size_t n, const char *const *
     lua_pop(L, 1);
 }
 
+void tl_new_owner(lua_State *L, const char *name, lua_CFunction collect) {
+    luaL_newmetatable(L, name);
+    lua_pushcfunction(L, collect);
+    lua_setfield(L, -2, "__gc");
+    lua_pop(L, 1);
+}
+
 bool tl_find_method(lua_State *L) {
     lua_pushvalue(L, 2);
     if (lua_rawget(L, lua_upvalueindex(1)) != LUA_TNIL)
@@ -210,6 +217,7 @@ static void push_native(lua_State *L) {
     luaL_newlib(L, functions);
     lua_pushstring(L, thole_version());
     lua_setfield(L, -2, "version");
+    tl_open_block(L);
     tl_open_times(L);
     tl_open_network(L);
     tl_open_build(L);

@@ -3,21 +3,12 @@
 
 #include "bind/bind.h"
 
-static int fail_at(lua_State *L, const tl_options *options, const char *name, const char *format,
-                   va_list list) {
-    tl_where(L);
-    lua_pushfstring(L, "option \"%s\" of %s", name, options->of);
-    lua_pushvfstring(L, format, list);
-    lua_concat(L, 3);
-    return lua_error(L);
-}
-
 int tl_option_fail(lua_State *L, const tl_options *options, const char *name, const char *format, ...) {
     va_list list;
     va_start(list, format);
-    fail_at(L, options, name, format, list);
+    lua_pushvfstring(L, format, list);
     va_end(list);
-    return 0;
+    return tl_fail(L, "option \"%s\" of %s%s", name, options->of, lua_tostring(L, -1));
 }
 
 static void refuse_unknown(lua_State *L, const tl_options *options, size_t n, const char *const *names) {

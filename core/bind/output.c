@@ -146,9 +146,11 @@ static int add(output *out, const char *bytes, size_t n) {
 
 static output *check_output(lua_State *L, const char *of) {
     output *out = luaL_testudata(L, 1, TL_OUTPUT);
-    if (out == NULL)
+    if (out == NULL) {
         tl_fail(L, "%s takes an output, not a %s: call it as out:write(…), with a colon", of,
                 luaL_typename(L, 1));
+        return NULL;
+    }
     if (out->fd < 0)
         tl_fail(L, "this output is closed: %s comes too late", of);
     return out;

@@ -25,7 +25,8 @@ return {
         example = "print(bars.zone)", prints = "Atlantic/Azores" },
     { name = "bars.unit", type = "text", text = "The unit of lifespans.", example = "print(bars.unit)", prints = "s" },
     { name = "bars.cells", type = "whole[]",
-        text = "How many cells of each dimension, from 0, the computation was of: a place, link or simplex counts once each time it appears.",
+        text = [[How many cells of each dimension, from 0, the computation was of: a place, link or simplex counts once
+each time it appears.]],
         example = "print(bars.cells[0], bars.cells[1])", prints = "4\t4" },
     { name = "bars.peak_bytes", type = "whole", text = "Most memory that the computation used, in bytes.",
         example = "print(bars.peak_bytes > 0)", prints = "true" },

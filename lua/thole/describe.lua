@@ -194,15 +194,15 @@ local function add_classes(out)
         out[#out + 1] = "---@class " .. class
         for _, entry in ipairs(fields[class]) do
             local name = entry.name:match("%.([%w_]+)$")
-            local code = api.code(entry.type)
+            local known = api.code(entry.type)
             if entry.name:find("<", 1, true) then
-                out[#out + 1] = ("---@field [string] %s %s"):format(code, one_line(entry.text))
+                out[#out + 1] = ("---@field [string] %s %s"):format(known, one_line(entry.text))
             elseif entry.name:find("[", 1, true) then
-                out[#out + 1] = ("---@field [integer] %s %s"):format(code, one_line(entry.text))
+                out[#out + 1] = ("---@field [integer] %s %s"):format(known, one_line(entry.text))
             elseif entry.name:sub(1, 1) == "#" then
-                out[#out + 1] = ("---@operator len: %s"):format(code)
+                out[#out + 1] = ("---@operator len: %s"):format(known)
             else
-                out[#out + 1] = ("---@field %s %s %s"):format(name, code, one_line(entry.text))
+                out[#out + 1] = ("---@field %s %s %s"):format(name, known, one_line(entry.text))
             end
         end
         out[#out + 1] = ("local %s = {}"):format(variable)

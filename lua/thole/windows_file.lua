@@ -33,7 +33,7 @@ local function records(text, separator, where)
             at = at + #value
             return (value:gsub("\r$", ""))
         end
-        local parts, from = {}, at
+        local parts = {}
         at = at + 1
         while true do
             local part = text:match('^[^"]*', at)

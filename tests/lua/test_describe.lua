@@ -150,9 +150,9 @@ local function run_example(name, text)
     local gate = registry["thole.gate"]
     registry["thole.gate"] = function(path) return t.folder() .. path end
     package.loaded["thole.host"] = { words = {}, recipe = "recipe.lua", command = "thole run recipe.lua", description = "" }
-    print = collect -- luacheck: ignore
+    _G.print = collect
     local fine, why = xpcall(assert(load(api.before .. text, "=" .. name)), debug.traceback)
-    print = own_print
+    _G.print = own_print
     registry["thole.gate"], package.loaded["thole.host"] = gate, host
     if not fine then error(("the example of %s fails: %s"):format(name, why)) end
     return table.concat(printed, "\n")

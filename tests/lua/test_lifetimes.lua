@@ -53,13 +53,13 @@ test("use after close is an error that says so", function()
 end)
 
 test("a view outlives what it was made from", function()
-    local net = some_network(100)
-    local view = net:keep { load = { min = 91 } }
-    local cuts = thole.windows.sliding(net, { length = 5 })
+    local view, cuts
+    do
+        local net <close> = some_network(100)
+        view, cuts = net:keep { load = { min = 91 } }, thole.windows.sliding(net, { length = 5 })
+    end
     local bars = view:zigzag { windows = cuts }
     local count = #bars
-    net:close()
-    net = nil
     collectgarbage()
     same(#view, 10)
     for link in view:each() do t.truth(link.load >= 91, "the filter") end

@@ -131,10 +131,8 @@ test("the proxy shows the link that the loop is at, and none after it", function
         local _ = kept.from
     end)
     same(tostring(kept), "link of a loop that is over")
-    for link in net:each() do
-        same(tostring(link), "link from Old Town to Hill, 0 to 5")
-        break
-    end
+    local next_link = net:each()
+    same(tostring(next_link()), "link from Old Town to Hill, 0 to 5")
 end)
 
 test("loops within loops do not share a proxy", function()

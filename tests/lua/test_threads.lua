@@ -38,3 +38,30 @@ test("one thread and three give the same file", function()
     t.truth(texts[1] == texts[2], "that the files are the same")
     t.truth(select(2, texts[1]:gsub("\n", "")) > 200, "that there are bars")
 end)
+
+-- The host has its own stories of signals, in tests/cli.
+if not package.loaded["thole.host"] then
+    test("Ctrl-C ends a long computation in the stock interpreter", function()
+        local script = t.write("long.lua", [[
+local thole = require "thole"
+local events = {}
+for i = 1, 20000 do events[i] = { "n" .. i * 7919 % 97, "m" .. i * 104729 % 89, i, i + 400 } end
+local net = thole.network(events)
+local cuts = thole.windows.sliding(net, { length = 50, overlap = 0.9999 })
+io.stdout:setvbuf("no")
+print("begins")
+-- one call, of minutes
+local fine, why = pcall(net.zigzag, net, { windows = cuts, radius = 2, dims = { 0, 1 } })
+print(fine, why)
+]])
+        -- The shell waits until the script says that it begins.
+        local fifo = t.folder() .. "fifo"
+        local pipe = io.popen(("mkfifo '%s'; timeout -s KILL 60 '%s' '%s' > '%s' 2>&1 & job=$!; "):format(fifo, arg[-1],
+            script, fifo) .. ("{ read line; echo $line; sleep 0.3; kill -INT $job; cat; } < '%s'; wait $job"):format(fifo))
+        local said = pipe:read("a")
+        pipe:close()
+        t.truth(said:find("^begins\n"), "that it began: " .. said)
+        t.truth(said:find("interrupted!", 1, true), "that it was interrupted: " .. said)
+        t.truth(not said:find("true", 1, true), "that it did not end by itself: " .. said)
+    end)
+end
