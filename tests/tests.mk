@@ -2,7 +2,8 @@
 # tests/reference/test_*.c is one cmocka program, linked to the static library, which also shows
 # the core's inner functions. What runs, and in which order, is in tests/all.sh.
 TEST_SRC  := $(sort $(wildcard tests/core/test_*.c tests/oracle/test_*.c tests/reference/test_*.c))
-TEST_BIN  := $(TEST_SRC:%.c=$(BUILD)/%) $(BUILD)/tests/fuzz/replay
+TEST_BIN  := $(TEST_SRC:%.c=$(BUILD)/%) $(BUILD)/tests/fuzz/replay $(BUILD)/tests/cli/allocations \
+             $(BUILD)/tests/cli/fail_nth.so $(BUILD)/tests/lua/fault_injection
 TEST_HELP := $(patsubst %.c,$(BUILD)/%.o,$(sort $(wildcard tests/support/*.c)))
 TEST_LIBS  = $(shell pkg-config --libs cmocka 2>/dev/null) -lm4ri -lcsv
 
@@ -12,6 +13,15 @@ $(BUILD)/tests/support/%.o: tests/support/%.c $(wildcard tests/support/*.h)
 $(BUILD)/tests/fuzz/replay: tests/fuzz/replay.c tests/fuzz/fuzz_contacts.c $(BUILD)/libthole.a
 	@mkdir -p $(@D)
 	$(CC) $(ALL_CFLAGS) -Itests -o $@ tests/fuzz/replay.c tests/fuzz/fuzz_contacts.c $(BUILD)/libthole.a $(CORE_LIBS) $(LDFLAGS)
+$(BUILD)/tests/cli/allocations: tests/cli/allocations.c
+	@mkdir -p $(@D)
+	$(CC) $(ALL_CFLAGS) -o $@ $<
+$(BUILD)/tests/cli/fail_nth.so: tests/cli/fail_nth.c
+	@mkdir -p $(@D)
+	$(CC) -std=c11 -D_GNU_SOURCE -O2 -Wall -Wextra -fPIC -shared -o $@ $<
+$(BUILD)/tests/lua/fault_injection: tests/lua/fault_injection.c $(BIND_OBJ) $(BUILD)/libthole.a
+	@mkdir -p $(@D)
+	$(CC) $(ALL_CFLAGS) $(LUA_CFLAGS) -o $@ $< $(BIND_OBJ) $(BUILD)/libthole.a $(LUA_LIBS) $(TEST_LIBS) $(CORE_LIBS) $(LDFLAGS)
 $(BUILD)/tests/%: tests/%.c $(TEST_HELP) $(BUILD)/libthole.a
 	@mkdir -p $(@D)
 	$(CC) $(ALL_CFLAGS) -Itests -o $@ $< $(TEST_HELP) $(BUILD)/libthole.a $(TEST_LIBS) $(CORE_LIBS) $(LDFLAGS)
