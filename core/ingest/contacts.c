@@ -332,13 +332,12 @@ static thole_status expect_more(reader *r) {
 static thole_status store(reader *r, thole_event event) {
     const ti_field *from = field_of(r, FROM), *to = field_of(r, TO);
     bool kept = false;
-    bool in_block = !r->rows.quoted; /* which has a margin */
     thole_status status = THOLE_OK;
     if (r->recent == NULL && ++r->stored == MANY_ROWS && (status = expect_more(r)) != THOLE_OK)
         return status;
-    status = ti_recent_node(r->recent, r->builder, from->at, from->length, in_block, &event.from, r->error);
+    status = ti_recent_node(r->recent, r->builder, from->at, from->length, &event.from, r->error);
     if (status == THOLE_OK)
-        status = ti_recent_node(r->recent, r->builder, to->at, to->length, in_block, &event.to, r->error);
+        status = ti_recent_node(r->recent, r->builder, to->at, to->length, &event.to, r->error);
     if (status == THOLE_OK)
         status = thole_builder_event(r->builder, event, &kept, r->error);
     for (size_t i = 0; i < r->attribute_n && kept && status == THOLE_OK; i++) {

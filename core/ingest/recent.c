@@ -3,10 +3,10 @@
 
 #include <string.h>
 
-thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length, bool readable,
-                            uint32_t *node, thole_error *error) {
+thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length, uint32_t *node,
+                            thole_error *error) {
     uint64_t a = 0, b = 0;
-    if (recent == NULL || !readable || length > TI_RECENT_LENGTH)
+    if (recent == NULL || length > TI_RECENT_LENGTH)
         return thole_builder_node(builder, text, length, node, error);
     if (length > 8) { /* the second word overlaps the first, which together tell all bytes */
         memcpy(&a, text, 8);

@@ -8,12 +8,12 @@
 #include "ingest/utf8.h"
 
 /* MARGIN bytes beyond the data are line feeds: a search for one always ends, eight bytes at a time. */
-enum { MARGIN = 16 };
+enum { MARGIN = TI_MARGIN };
 
 static const uint64_t ONES = UINT64_C(0x0101010101010101), HIGHS = UINT64_C(0x8080808080808080);
 
-/* The high bit of each byte of `word` that is zero; bytes above the first one may be marked without being zero. */
-static inline uint64_t zeros(uint64_t word) { return (word - ONES) & ~word & HIGHS; }
+/* The high bit of each byte of `word` that is zero. The sum does not carry from byte to byte. */
+static inline uint64_t zeros(uint64_t word) { return ~(((word & ~HIGHS) + ~HIGHS) | word) & HIGHS; }
 
 static inline uint64_t load(const char *at) {
     uint64_t word;
@@ -172,9 +172,12 @@ typedef struct scan {
     uint64_t lines; /* line feeds inside quoted fields */
 } scan;
 
-static bool put_field(ti_rows *rows, const char *at, size_t length, const char *from) {
-    if (rows->n == rows->field_cap &&
-        !tb_reserve(rows->context->memory, (void **)&rows->field, &rows->field_cap, rows->n + 1, sizeof *rows->field))
+static bool grow_fields(ti_rows *rows) {
+    return tb_reserve(rows->context->memory, (void **)&rows->field, &rows->field_cap, rows->n + 1, sizeof *rows->field);
+}
+
+static inline bool put_field(ti_rows *rows, const char *at, size_t length, const char *from) {
+    if (rows->n == rows->field_cap && !grow_fields(rows))
         return false;
     rows->field[rows->n++] = (ti_field){.at = at, .length = (uint32_t)length, .from = (uint32_t)(from - rows->row)};
     return true;
@@ -193,35 +196,45 @@ static outcome flawed(ti_rows *rows, ti_flaw flaw, const char *from, const char 
 
 /* The quoted field without its quotes, doubled ones made single. */
 static const char *without_doubles(ti_rows *rows, const char *from, const char *to, size_t *length) {
-    char *text = tb_arena_take(&rows->arena, (size_t)(to - from), 1), *at = text;
+    char *text = tb_arena_take(&rows->arena, (size_t)(to - from) + MARGIN, 1), *at = text;
     if (text == NULL)
         return NULL;
+    memset(text + (to - from), 0, MARGIN);
     while (from < to) {
-        const char *quote = memchr(from, '"', (size_t)(to - from));
-        size_t n = quote != NULL ? (size_t)(quote - from) + 1 : (size_t)(to - from);
-        memcpy(at, from, n);
-        at += n;
-        from += n + (quote != NULL);
+        bool quote = *from == '"';
+        *at++ = *from++;
+        from += quote;
     }
     *length = (size_t)(at - text);
     return text;
 }
 
+/* The next quote from `p` on, or the end; notes on the way what else is met, and a little beyond. */
+static const char *find_quote(const char *p, scan *s, uint64_t *feeds) {
+    for (;; p += 8) {
+        uint64_t word = load(p), marks = zeros(word ^ ONES * (unsigned char)'"');
+        s->odd |= word | (word - ONES);
+        *feeds |= zeros(word ^ ONES * (unsigned char)'\n');
+        if (marks != 0)
+            return p + first_byte(marks) < s->end ? p + first_byte(marks) : s->end;
+        if (s->end - p <= 8)
+            return s->end;
+    }
+}
+
 /* A field that begins with a quote; s->at is left at the separator or line feed after it. */
 static outcome scan_quoted(ti_rows *rows, scan *s) {
     const char *from = s->at, *p = from + 1;
+    uint64_t feeds = 0;
     bool doubled = false;
     for (;; p += 2, doubled = true) {
-        const char *quote = p < s->end ? memchr(p, '"', (size_t)(s->end - p)) : NULL;
-        p = quote != NULL ? quote : s->end;
+        p = p < s->end ? find_quote(p, s, &feeds) : s->end;
         if (p - from > TI_MOST_FIELD)
             return flawed(rows, TI_LONG_FIELD, from, p, rows->row);
-        if (quote == NULL && !rows->ended)
-            return MORE;
-        if (quote == NULL)
+        if (p + 1 >= s->end && !rows->ended)
+            return MORE; /* no quote, or perhaps one of two */
+        if (p == s->end)
             return flawed(rows, TI_UNCLOSED, from, s->end, rows->row);
-        if (p + 1 == s->end && !rows->ended)
-            return MORE; /* the quote may be one of two */
         if (p[1] != '"' || p + 1 == s->end)
             break;
     }
@@ -235,33 +248,47 @@ static outcome scan_quoted(ti_rows *rows, scan *s) {
         return flawed(rows, TI_AFTER_QUOTE, from, after, rows->row);
     if (doubled && (text = without_doubles(rows, text, p, &length)) == NULL)
         return NO_ROOM;
-    s->lines += count_lines(from, p);
-    s->odd = HIGHS; /* it was not looked at byte by byte */
+    if (feeds != 0)
+        s->lines += count_lines(from, p);
     s->at = after;
     rows->quoted = true;
     return put_field(rows, text, length, from) ? DONE : NO_ROOM;
 }
 
+/* Fields without quotes, up to the line's end or a field that is not one of them. The marks of a word serve all fields
+ * that end in it. */
 static outcome scan_bare(ti_rows *rows, scan *s) {
     const uint64_t separators = ONES * (unsigned char)rows->separator, feeds = ONES * (unsigned char)'\n';
-    const char *from = s->at, *p = from;
-    for (;; p += 8) {
-        uint64_t word = load(p), marks = zeros(word ^ separators) | zeros(word ^ feeds);
-        s->odd |= word | (word - ONES); /* the second sets the high bit of every NUL */
-        if (marks != 0) {
-            p += first_byte(marks);
-            break; /* at the latest in the margin */
+    const char *from = s->at, *base = from, *end = s->end;
+    uint64_t word = load(base), marks = zeros(word ^ separators) | zeros(word ^ feeds), odd = s->odd | word | (word - ONES);
+    for (;;) {
+        while (marks == 0) { /* at the latest the margin has some */
+            word = load(base += 8);
+            marks = zeros(word ^ separators) | zeros(word ^ feeds);
+            odd |= word | (word - ONES); /* the second sets the high bit of every NUL */
+        }
+        const char *p = base + first_byte(marks);
+        marks &= marks - 1;
+        if (p >= end) {
+            p = end;
+            if (p - from <= TI_MOST_FIELD && !rows->ended)
+                return MORE;
+        }
+        if (p - from > TI_MOST_FIELD)
+            return flawed(rows, TI_LONG_FIELD, from, p, p);
+        size_t length = (size_t)(p - from);
+        bool last = *p == '\n';
+        if (last && length > 0 && p[-1] == '\r')
+            length--;
+        if (!put_field(rows, from, length, from))
+            return NO_ROOM;
+        from = p + 1;
+        if (last || *from == '"' || rows->n == rows->most) {
+            s->at = p;
+            s->odd = odd;
+            return DONE;
         }
     }
-    s->at = p = p < s->end ? p : s->end;
-    if (p - from > TI_MOST_FIELD)
-        return flawed(rows, TI_LONG_FIELD, from, p, p);
-    if (p == s->end && !rows->ended)
-        return MORE;
-    size_t length = (size_t)(p - from);
-    if (*p == '\n' && length > 0 && p[-1] == '\r')
-        length--;
-    return put_field(rows, from, length, from) ? DONE : NO_ROOM;
 }
 
 /* Find the fields from rows->begin to the line's end. MORE: the block ends first. */

@@ -13,7 +13,8 @@ enum {
     TI_MOST_FIELD = 1 << 20, /* bytes of a field, quotes included */
     TI_MOST_ROW = 16 << 20,
     TI_MOST_COLUMNS = 65536,
-    TI_BLOCK = 1 << 18
+    TI_BLOCK = 1 << 18,
+    TI_MARGIN = 16 /* bytes behind every field that may be read too, whatever they are */
 };
 
 /* Why a row is no good. */
