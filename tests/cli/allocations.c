@@ -97,7 +97,8 @@ static const char *verdict(int worker, long at, long usual_live, char *said, boo
     if (!WIFEXITED(status))
         return "it ended by a signal";
     *refused = WEXITSTATUS(status) != 0;
-    if (WEXITSTATUS(status) > 1)
+    /* 2 is for a recipe that cannot be opened, here for want of memory. */
+    if (WEXITSTATUS(status) > 1 && !(WEXITSTATUS(status) == 2 && strstr(said, "Cannot allocate memory") != NULL))
         return "its exit code is neither 0 nor 1";
     if (*refused && said[0] == '\0')
         return "it failed without a word";

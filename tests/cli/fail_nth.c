@@ -3,6 +3,7 @@
  *
  * FAIL_AT=n (0: none), FAIL_ON=1 for all that follow too, FAIL_REPORT=path for the report. The blocks made before main begins
  * do not count. */
+#include <errno.h>
 #include <fcntl.h>
 #include <stdatomic.h>
 #include <stdio.h>
@@ -43,7 +44,10 @@ static int refuse(void) {
     if (!counting)
         return 0;
     long call = atomic_fetch_add(&calls, 1) + 1;
-    return fail_at > 0 && (call == fail_at || (fail_on && call > fail_at));
+    if (fail_at <= 0 || (call != fail_at && !(fail_on && call > fail_at)))
+        return 0;
+    errno = ENOMEM;
+    return 1;
 }
 
 void *malloc(size_t n) {
