@@ -37,7 +37,8 @@ api.types = {
     output = { "output", "thole.Output" },
     needed = { "needed", "thole.Needed" },
     asks = { "function of a link", "fun(link: thole.Link): any" },
-    rule = { "function", "fun(i: integer, start: thole.Time|nil, finish: thole.Time|nil): thole.Time|nil, thole.Time|nil, string|nil" },
+    rule = { "function",
+        "fun(i: integer, start: thole.Time|nil, finish: thole.Time|nil): thole.Time|nil, thole.Time|nil, string|nil" },
     format = { "function", "fun(thing: any, out: thole.Output)" },
     links = { "iterator of links", "fun(): thole.Link" },
     cuts = { "iterator of windows", "fun(): thole.Window" },
@@ -60,9 +61,10 @@ local bars = net:zigzag { windows = cuts, radius = "graph" }
 api.about = {
     { "Times", [[
 On a calendar clock a time is ISO 8601 text with its offset, in the network's zone:
-"2031-03-03T06:20:00-01:00". Where a time is taken, such text will do; without an offset it is local time. So will
-a number: seconds since 1970-01-01T00:00:00Z. On a plain clock a time is a number, whole where it can be, and
-numbers or their text are taken. All times are exact to a billionth of the unit; what is finer is refused.]] },
+"2031-03-03T06:20:00-01:00". Where a time is taken, such text will do; without an offset it is local
+time. So will a number: seconds since 1970-01-01T00:00:00Z. On a plain clock a time is a number, whole
+where it can be, and numbers or their text are taken. All times are exact to a billionth of the unit;
+what is finer is refused.]] },
     { "Durations", [[
 Text with units, added up: "20 min", "1 h 30 min", "2 d"; or a number in the clock's unit, which is the
 second on a calendar clock. On a plain clock with another unit: numbers, or numbers with that unit's name.]] },

@@ -2,13 +2,16 @@
 
 return {
     title = "Windows", class = "thole.Windows",
-    text = [[Windows cut time into half-open intervals: a link is in a window when it is active at some instant of it, the
-window's finish not included. Windows are in order of their start; they may overlap and leave gaps.]],
+    text = [[Windows cut time into half-open intervals: a link is in a window when it is active at some
+instant of it, the window's finish not included. Windows are in order of their start; they may overlap
+and leave gaps.]],
     {
         name = "thole.windows.sliding",
-        text = [[Windows of one length, each starting a step after the one before. They begin at the first start of the links
-and go on until one reaches their last finish; a contact at the very end is in a window too.]],
-        args = { { "net", "network", "whose clock and span they have" }, { "options", "table", "length must be there" } },
+        text = [[Windows of one length, each starting a step after the one before. They begin at the first
+start of the links and go on until one reaches their last finish; a contact at the very end is in a
+window too.]],
+        args = { { "net", "network", "whose clock and span they have" },
+            { "options", "table", "length must be there" } },
         options = {
             { "length", "duration", "needed", "of each window" },
             { "overlap", "number", "0", "share of a window that the next one has too, from 0 to below 1" },
@@ -17,7 +20,8 @@ and go on until one reaches their last finish; a contact at the very end is in a
             { "finish", "time", "the links' last finish", "windows go on until one reaches it" },
         },
         returns = { { "windows", "in order" } },
-        errors = { "both a step and an overlap", "a network without links, where start or finish is not given" },
+        errors = { "both a step and an overlap",
+            "a network without links, where start or finish is not given" },
         example = [[
 local w = thole.windows.sliding(net, { length = "20 min", overlap = 0.5 })
 print(#w, w[2].start)]],
@@ -25,8 +29,8 @@ print(#w, w[2].start)]],
     },
     {
         name = "thole.windows.list",
-        text = [[Windows that are listed: { start, finish, label } by place, or start =, finish =, label = by name; or
-in a file of delimited text whose header names start, finish and perhaps label.]],
+        text = [[Windows that are listed: { start, finish, label } by place, or start =, finish =, label =
+by name; or in a file of delimited text whose header names start, finish and perhaps label.]],
         args = { { "net", "network", "whose clock they have" },
             { "list", "table[]|text", 'the windows, or the path of a file ("-" is standard input)' } },
         returns = { { "windows", "in the order given" } },
@@ -68,6 +72,7 @@ print(#w, w[1].start, w[2].label)]],
         example = "cuts:close()\nprint(cuts, #bars.windows)", prints = "closed windows\t4" },
     { name = "window.start", class = "thole.Window", type = "time", text = "The first instant of it." },
     { name = "window.finish", class = "thole.Window", type = "time", text = "The first instant after it." },
-    { name = "window.label", class = "thole.Window", type = "text", text = 'Its label; "" when it has none.' },
+    { name = "window.label", class = "thole.Window", type = "text",
+        text = 'Its label; "" when it has none.' },
     { name = "window.index", class = "thole.Window", type = "whole", text = "Its number, from 1." },
 }

@@ -42,16 +42,19 @@ local function add_entry(out, entry)
     if entry.args and #entry.args > 0 then
         local rows = {}
         for i, arg in ipairs(entry.args) do
-            rows[i] = { ("`%s`"):format(arg[1]), api.words(arg[2]) .. (arg.optional and ", or left out" or ""), cell(arg[3]) }
+            rows[i] = { ("`%s`"):format(arg[1]), api.words(arg[2])
+                .. (arg.optional and ", or left out" or ""), cell(arg[3]) }
         end
         table_of(out, { "argument", "type", "meaning" }, rows)
     end
     if entry.options then
         local rows = {}
         for i, option in ipairs(entry.options) do
-            rows[i] = { ("`%s`"):format(option[1]), api.words(option[2]), cell(option[3] or "–"), cell(option[4]) }
+            rows[i] = { ("`%s`"):format(option[1]), api.words(option[2]), cell(option[3] or "–"),
+                cell(option[4]) }
         end
-        table_of(out, { entry.options_of and "key of " .. entry.options_of or "option", "type", "default", "meaning" }, rows)
+        table_of(out, { entry.options_of and "key of " .. entry.options_of or "option", "type", "default",
+            "meaning" }, rows)
     end
     for _, value in ipairs(entry.returns or {}) do
         out[#out + 1] = ("- Returns %s: %s."):format(api.words(value[1]), value[2])
@@ -147,7 +150,8 @@ local function add_options_class(out, entry)
     out[#out + 1] = ("---@class %s"):format(options_class(entry))
     for _, option in ipairs(entry.options) do
         local needed = option[3] == "needed"
-        out[#out + 1] = ("---@field %s%s %s %s%s"):format(option[1], needed and "" or "?", api.code(option[2]),
+        out[#out + 1] = ("---@field %s%s %s %s%s"):format(option[1], needed and "" or "?",
+            api.code(option[2]),
             one_line(option[4]), (not needed and option[3]) and (" (default: %s)"):format(option[3]) or "")
     end
     out[#out + 1] = ""
@@ -161,7 +165,8 @@ local function add_function(out, entry, path)
     for i, arg in ipairs(entry.args) do
         names[i] = arg[1]
         local type = arg[1] == "options" and options_class(entry) or api.code(arg[2])
-        out[#out + 1] = ("---@param %s%s %s %s"):format(arg[1], arg.optional and "?" or "", type, one_line(arg[3]))
+        out[#out + 1] = ("---@param %s%s %s %s"):format(arg[1], arg.optional and "?" or "", type,
+            one_line(arg[3]))
     end
     for _, value in ipairs(entry.returns or {}) do
         out[#out + 1] = ("---@return %s # %s"):format(api.code(value[1]), one_line(value[2]))
@@ -219,7 +224,8 @@ local function stub()
         "-- For editors only: names, types and units. Made by lua/thole/describe.lua from lua/thole/api*.lua.", "",
     }
     for _, about in ipairs(api.about) do
-        local alias = ({ Times = "---@alias thole.Time string|number", Durations = "---@alias thole.Duration string|number" })[about[1]]
+        local alias = ({ Times = "---@alias thole.Time string|number",
+            Durations = "---@alias thole.Duration string|number" })[about[1]]
         if alias then
             add_comment(out, about[2])
             out[#out + 1] = alias

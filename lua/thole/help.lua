@@ -51,7 +51,8 @@ return function(name)
     else
         local entry = type(name) == "string" and api.find(name)
         if not entry then
-            native.fail(('there is no help on "%s": %s'):format(tostring(name), nearest.hint(tostring(name), api.names())))
+            native.fail(('there is no help on "%s": %s'):format(tostring(name),
+                nearest.hint(tostring(name), api.names())))
         end
         describe(lines, entry)
     end

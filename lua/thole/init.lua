@@ -26,7 +26,8 @@ local function guard(module, shown)
             local names = {}
             for name in pairs(module) do names[#names + 1] = name end
             table.sort(names)
-            native.fail(('%s has no "%s": %s'):format(shown, tostring(key), nearest.hint(tostring(key), names)))
+            native.fail(('%s has no "%s": %s'):format(shown, tostring(key),
+                nearest.hint(tostring(key), names)))
         end,
     })
 end

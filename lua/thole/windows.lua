@@ -24,7 +24,8 @@ local function check_options(opts, known, of)
         end
         local found = false
         for _, name in ipairs(known) do found = found or name == key end
-        if not found then fail(('unknown option "%s" of %s: %s'):format(key, of, nearest.hint(key, known))) end
+        if not found then fail(('unknown option "%s" of %s: %s'):format(key, of,
+            nearest.hint(key, known))) end
     end
     return opts
 end
@@ -48,7 +49,8 @@ local function step_of_overlap(length, opts)
     local overlap = opts.overlap
     if overlap == nil then return length end
     if type(overlap) ~= "number" or not (overlap >= 0 and overlap < 1) then
-        fail(('option "overlap" of %s is a share from 0 to below 1, not %s'):format(SLIDING, tostring(overlap)))
+        fail(('option "overlap" of %s is a share from 0 to below 1, not %s'):format(SLIDING,
+            tostring(overlap)))
     end
     local share, why = native.number_ticks(overlap)
     if not share then fail(('option "overlap" of %s: %s'):format(SLIDING, why)) end
@@ -98,7 +100,8 @@ local function collector(net, of)
         end
         local from, to = ticks(start, "start"), ticks(finish, "finish")
         label = label ~= nil and tostring(label) or ""
-        if label:find("\0", 1, true) then fail(("label of window %d of %s has a NUL byte in it"):format(n + 1, of)) end
+        if label:find("\0", 1, true) then fail(("label of window %d of %s has a NUL byte in it"):format(n + 1,
+            of)) end
         n = n + 1
         starts[n], finishes[n], labels[n] = from, to, label
     end
@@ -118,7 +121,8 @@ local function listed(window, i)
     end
     for key in pairs(window) do
         if not (key == 1 or key == 2 or key == 3 or key == "start" or key == "finish" or key == "label") then
-            fail(('window %d of %s has "%s": %s'):format(i, LIST, tostring(key), nearest.hint(tostring(key), KEYS)))
+            fail(('window %d of %s has "%s": %s'):format(i, LIST, tostring(key),
+                nearest.hint(tostring(key), KEYS)))
         end
     end
     local by_name = window.start ~= nil or window.finish ~= nil or window.label ~= nil

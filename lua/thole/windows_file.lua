@@ -14,7 +14,8 @@ local OF = "thole.windows.list"
 local function slurp(path)
     if path == "-" then return stdin:read("a") end
     local file, why = open(path, "rb")
-    if not file then native.fail(("cannot read %s"):format(why:gsub("^(.*): (%u)(.*)$", function(name, first, rest)
+    if not file then native.fail(("cannot read %s"):format(why:gsub("^(.*): (%u)(.*)$",
+        function(name, first, rest)
         return ('"%s": %s%s'):format(name, first:lower(), rest)
     end))) end
     local text, fault = file:read("a")
@@ -40,7 +41,8 @@ local function records(text, separator, where)
             at = at + #part
             parts[#parts + 1] = part
             for _ in part:gmatch("\n") do line = line + 1 end
-            if text:sub(at, at) == "" then where(start_line, nil, "a quote is opened but not closed: close it") end
+            if text:sub(at, at) == "" then where(start_line, nil,
+                "a quote is opened but not closed: close it") end
             at = at + 1
             if text:sub(at, at) ~= '"' then break end
             parts[#parts + 1], at = '"', at + 1
@@ -48,7 +50,8 @@ local function records(text, separator, where)
         if text:sub(at, at) == "\r" then at = at + 1 end
         local after = text:sub(at, at)
         if after ~= "" and after ~= "\n" and after ~= separator then
-            where(start_line, nil, ('"%s" follows a closing quote: double quotes inside of quoted text'):format(after))
+            where(start_line, nil,
+                ('"%s" follows a closing quote: double quotes inside of quoted text'):format(after))
         end
         return table.concat(parts)
     end
@@ -104,7 +107,8 @@ function windows_file.read(net, given)
     for i, name in ipairs(header) do column[name] = column[name] or i end
     for _, name in ipairs { "start", "finish" } do
         if not column[name] then
-            where(line, nil, ('there is no column "%s": name the columns start, finish and perhaps label in the first line')
+            where(line, nil,
+                ('there is no column "%s": name the columns start, finish and perhaps label in the first line')
                 :format(name))
         end
     end

@@ -11,10 +11,13 @@ local net <close> = thole.network({
 }, { zone = "Atlantic/Azores" })
 local links = folder .. "links.csv"
 thole.write(links, net)
-local read <close> = thole.read_contacts(links, { zone = "Atlantic/Azores", columns = { "mode", "seats" }, linger = "1 min" })
+local read <close> = thole.read_contacts(links,
+    { zone = "Atlantic/Azores", columns = { "mode", "seats" }, linger = "1 min" })
 
-local some <close> = read:keep { mode = { "bus", "ferry" }, any = { { seats = { min = 1 } }, { no = { seats = true } } } }
-local rest <close> = read:drop(function(link) return link.duration > 1800 or link.mode == nil or link.from == "Hill" end)
+local some <close> = read:keep { mode = { "bus", "ferry" },
+    any = { { seats = { min = 1 } }, { no = { seats = true } } } }
+local rest <close> = read:drop(function(link) return link.duration > 1800 or link.mode == nil
+    or link.from == "Hill" end)
 local early <close> = net:between("2031-03-03T06:00", "2031-03-03T06:15")
 local counts = tostring(net:summary()):gsub("memory[^\n]*", "") -- which depends on what was refused
 local text = { counts, tostring(rest), net.zone, net.unit, table.concat(net.columns, " ") }
@@ -35,7 +38,8 @@ for bar in bars:each { longest = 3, shortest_lifespan = "5 min" } do
     text[#text + 1] = bar.birth .. bar.kind .. bars:text(bar.index, "death")
 end
 text[#text + 1] = table.concat(bars:betti(1, { joins = true }), " ") .. bars:count { dim = 1, at = 2 }
-text[#text + 1] = table.concat({ bars.radius, bars.join, #bars.windows, listed[1].label, bars.cells[1], bars.dims[2] }, " ")
+text[#text + 1] = table.concat({ bars.radius, bars.join, #bars.windows, listed[1].label, bars.cells[1],
+    bars.dims[2] }, " ")
 thole.threads(thole.threads())
 
 thole.write(folder .. "out.txt", table.concat(text, "\n"))

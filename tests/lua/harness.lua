@@ -49,7 +49,8 @@ function harness.raises(text, f, ...)
     end
     line = tonumber(line)
     if line < info.linedefined or line > info.lastlinedefined then
-        error(("the error is placed in line %d, not in %d to %d"):format(line, info.linedefined, info.lastlinedefined), 2)
+        error(("the error is placed in line %d, not in %d to %d"):format(line, info.linedefined,
+            info.lastlinedefined), 2)
     end
 end
 

@@ -3,7 +3,8 @@
 --     LUA_CPATH=build/?.so lua5.4 tests/lua/run.lua [only=NAME]
 --     build/thole run --trust tests/lua/run.lua [only=NAME]
 
-local FILES = { "times", "network", "contacts", "filters", "windows", "barcode", "output", "lifetimes", "threads",
+local FILES = { "times", "network", "contacts", "filters", "windows", "barcode", "output", "lifetimes",
+    "threads",
     "describe" }
 
 package.path = "tests/lua/?.lua;" .. package.path

@@ -21,7 +21,8 @@ end
 test("the four usual words, and attributes by the rest", function()
     local net <close> = reads "from,to,start,finish,mode,seats\nA,B,0,5,ferry,40\nB,C,2.5,3,bus,\n"
     same(net.columns, { "mode", "seats" })
-    same(links(net, "mode", "seats"), { { "A", "B", 0, 5, mode = "ferry", seats = 40 }, { "B", "C", 2.5, 3, mode = "bus" } })
+    same(links(net, "mode", "seats"), { { "A", "B", 0, 5, mode = "ferry", seats = 40 }, { "B", "C", 2.5, 3,
+        mode = "bus" } })
     local s = net:summary()
     same({ s.rows, s.read, s.source }, { 2, 2, t.folder() .. "in.csv" })
 end)
@@ -32,14 +33,18 @@ test("without a finish column all are contacts, with linger for a while", functi
     same(links(reads(text, { linger = "1 min" })), { { "A", "B", 1, 61 }, { "B", "C", 2, 62 } })
     same(links(reads(text, { linger = 0.5 })), { { "A", "B", 1, 1.5 }, { "B", "C", 2, 2.5 } })
     local fine, why = pcall(reads, text, { finish = "end" })
-    t.truth(not fine and why:find('"end"', 1, true), "that a finish column which is named must be there: " .. tostring(why))
+    t.truth(not fine and why:find('"end"', 1, true), "that a finish column which is named must be there: "
+        .. tostring(why))
 end)
 
 test("columns by name, number and duration; another separator; no header", function()
-    same(links(reads("a;b;when;lasts\nX;Y;10;5\n", { from = "a", to = 2, start = "when", duration = "lasts" })),
+    same(links(reads("a;b;when;lasts\nX;Y;10;5\n",
+        { from = "a", to = 2, start = "when", duration = "lasts" })),
         { { "X", "Y", 10, 15 } })
-    same(links(reads("10\tX\tY\n", { header = false, start = 1, from = 2, to = 3, separator = "\t" })), { { "X", "Y", 10, 10 } })
-    same(links(reads("10,X,Y,12\n", { header = false, start = 1, from = 2, to = 3, finish = 4 })), { { "X", "Y", 10, 12 } })
+    same(links(reads("10\tX\tY\n", { header = false, start = 1, from = 2, to = 3, separator = "\t" })),
+        { { "X", "Y", 10, 10 } })
+    same(links(reads("10,X,Y,12\n", { header = false, start = 1, from = 2, to = 3, finish = 4 })),
+        { { "X", "Y", 10, 12 } })
 end)
 
 test("clocks: zone, unit, form of times", function()
@@ -47,7 +52,8 @@ test("clocks: zone, unit, form of times", function()
     local net <close> = reads(text, { zone = "Atlantic/Azores" })
     same({ net.zone, net.unit }, { "Atlantic/Azores", "s" })
     same(links(net), { { "A", "B", "2031-01-04T06:20:00-01:00", "2031-01-04T07:00:00-01:00" } })
-    same(links(reads("from,to,start\nA,B,60\n", { time = "epoch" })), { { "A", "B", "1970-01-01T00:01:00Z", "1970-01-01T00:01:00Z" } })
+    same(links(reads("from,to,start\nA,B,60\n", { time = "epoch" })),
+        { { "A", "B", "1970-01-01T00:01:00Z", "1970-01-01T00:01:00Z" } })
     local km <close> = reads("from,to,start,finish\nA,B,1,2\n", { unit = "km", time = "plain" })
     same({ km.unit, km.zone }, { "km", nil })
 end)
@@ -75,12 +81,15 @@ test("mistakes in options are named", function()
         raises(text, function() thole.read_contacts(other or path, opts) end)
     end
     refuse('unknown option "form" of thole.read_contacts: did you mean "from"?', { form = "a" })
-    refuse('option "from" of thole.read_contacts is the name of a column or its number, not a boolean', { from = true })
+    refuse('option "from" of thole.read_contacts is the name of a column or its number, not a boolean',
+        { from = true })
     refuse('option "to" of thole.read_contacts is a whole number, not 1.5', { to = 1.5 })
     refuse('option "to" of thole.read_contacts is 0: give 1 to 1000000', { to = 0 })
     refuse('option "separator" of thole.read_contacts is ",", ";" or "\\t", not "|"', { separator = "|" })
-    refuse('option "time" of thole.read_contacts has no choice "unix": known are iso, epoch, plain', { time = "unix" })
-    refuse('option "faulty" of thole.read_contacts has no choice "skp": did you mean "skip"?', { faulty = "skp" })
+    refuse('option "time" of thole.read_contacts has no choice "unix": known are iso, epoch, plain',
+        { time = "unix" })
+    refuse('option "faulty" of thole.read_contacts has no choice "skp": did you mean "skip"?',
+        { faulty = "skp" })
     refuse('option "header" of thole.read_contacts is true or false, not a number', { header = 0 })
     refuse('option "columns" of thole.read_contacts is a list of names, not a string', { columns = "mode" })
     refuse('option "columns" of thole.read_contacts has a number in it: give names', { columns = { 5 } })

@@ -85,21 +85,25 @@ test("mistakes in filters are named", function()
     end
     refuse('net:keep takes a table, as in { mode = "ferry" }, or a function of a link, not a string', "ferry")
     refuse('filter of net:keep: a filter is empty: name a field, as in { mode = "ferry" }', {})
-    refuse('filter of net:keep: a filter has names of fields, as in { mode = "ferry" }, not number keys', { "ferry" })
+    refuse('filter of net:keep: a filter has names of fields, as in { mode = "ferry" }, not number keys',
+        { "ferry" })
     refuse('filter of net:keep: field "seats" is compared with an empty table: give either a list of values or { min =, max = }',
         { seats = {} })
     refuse('filter of net:keep: field "seats" is compared with a mixed table: give either a list of values or { min =, max = }',
         { seats = { 1, min = 2 } })
-    refuse('filter of net:keep: field "seats" has "mn", but knows min, max, or a list of values', { seats = { mn = 2 } })
+    refuse('filter of net:keep: field "seats" has "mn", but knows min, max, or a list of values',
+        { seats = { mn = 2 } })
     refuse('filter of net:keep: field "seats" is compared with a function: give a number, a text, a list, { min =, max = }, true or false',
         { seats = print })
     refuse('filter of net:keep: field "from" is compared with a number: give a name', { from = 1.5 })
     refuse('filter of net:keep: field "start": "dawn" is not a time: the network\'s times are plain numbers, write for example 12.5',
         { start = "dawn" })
-    refuse('filter of net:keep: "any" takes a list of filters, as in { { mode = "ferry" }, { seats = 4 } }', { any = { mode = "bus" } })
+    refuse('filter of net:keep: "any" takes a list of filters, as in { { mode = "ferry" }, { seats = 4 } }',
+        { any = { mode = "bus" } })
     refuse('filter of net:keep: "all" takes a list of filters, not a string', { all = "bus" })
     refuse('filter of net:keep: a filter is a table, not a string', { any = { "bus" } })
-    refuse('filter of net:keep: "no" has a list and other keys: give a list of filters', { no = { { mode = "bus" }, mode = "bus" } })
+    refuse('filter of net:keep: "no" has a list and other keys: give a list of filters',
+        { no = { { mode = "bus" }, mode = "bus" } })
     local deep = { mode = "bus" }
     for _ = 1, 60 do deep = { no = deep } end
     refuse("filter of net:keep: filters stand in one another more than 50 deep", deep)
@@ -117,8 +121,10 @@ test("an error in a filter function is raised as it is", function()
     local fine, why = pcall(NET.keep, NET, function() error(token) end)
     same(fine, false)
     t.truth(rawequal(why, token), "that the error is the function's own")
-    raises("seats of 0", function() NET:keep(function(link) if link.start == 5 then error("seats of 0") end end) end)
-    raises('a link has no field "seat": did you mean "seats"?', function() NET:drop(function(link) return link.seat end) end)
+    raises("seats of 0",
+        function() NET:keep(function(link) if link.start == 5 then error("seats of 0") end end) end)
+    raises('a link has no field "seat": did you mean "seats"?',
+        function() NET:drop(function(link) return link.seat end) end)
     same(#NET:keep { mode = "ferry" }, 2) -- and the network is as it was
 end)
 
@@ -139,7 +145,8 @@ local function random_filter(random, depth)
     elseif kind == 1 then
         local low = random(10)
         local high = low + random(5)
-        return { load = { min = low, max = high } }, function(l) return l.load ~= nil and l.load >= low and l.load <= high end
+        return { load = { min = low, max = high } }, function(l) return l.load ~= nil and l.load >= low
+            and l.load <= high end
     elseif kind == 2 then
         local present = random(2) == 0
         return { price = present }, function(l) return (l.price ~= nil) == present end

@@ -19,7 +19,8 @@ test("closing twice is closing", function()
         thing:close()
         thing:close()
     end
-    same({ tostring(net), tostring(cuts), tostring(bars) }, { "closed network", "closed windows", "closed barcode" })
+    same({ tostring(net), tostring(cuts), tostring(bars) },
+        { "closed network", "closed windows", "closed barcode" })
 end)
 
 test("use after close is an error that says so", function()
@@ -36,7 +37,8 @@ test("use after close is an error that says so", function()
     raises("this network is closed: net:zigzag comes too late", function() net:zigzag {} end)
     raises("this network is closed: columns comes too late", function() local _ = net.columns end)
     raises("this network is closed: # comes too late", function() local _ = #net end)
-    raises("this network is closed: thole.windows.sliding comes too late", function() thole.windows.sliding(net, { length = 1 }) end)
+    raises("this network is closed: thole.windows.sliding comes too late",
+        function() thole.windows.sliding(net, { length = 1 }) end)
     raises("these windows are closed: # comes too late", function() local _ = #cuts end)
     raises("these windows are closed: w[i] comes too late", function() local _ = cuts[1] end)
     raises("these windows are closed: windows:each comes too late", function() each_window() end)
@@ -106,10 +108,12 @@ local function stays_small(times, limit, f)
         f()
         most, most_lua = math.max(most, (native.memory())), math.max(most_lua, collectgarbage("count"))
     end
-    t.truth(most - core < limit * 1000, ("that the core's memory does not grow: %d bytes at first, then %d"):format(core, most))
+    t.truth(most - core < limit * 1000,
+        ("that the core's memory does not grow: %d bytes at first, then %d"):format(core, most))
     t.truth(most_lua < 40000, ("that Lua's memory does not grow: %d kB"):format(most_lua // 1))
     local now = kilobytes("VmRSS")
-    t.truth(INSTRUMENTED or now - process < limit, ("that the process does not grow: %d kB at first, %d kB now"):format(process, now))
+    t.truth(INSTRUMENTED or now - process < limit,
+        ("that the process does not grow: %d kB at first, %d kB now"):format(process, now))
 end
 
 test("networks that are dropped in a loop are collected in time", function()
@@ -125,7 +129,8 @@ test("networks made anew, barcodes, windows and choices too", function()
     stays_small(100, 20000, function()
         local fresh = thole.network(events)
         thole.windows.sliding(fresh, { length = 1e-3, start = 0, finish = 20 })
-        local bars = fresh:zigzag { windows = thole.windows.sliding(fresh, { length = 10 }), radius = "graph" }
+        local bars = fresh:zigzag { windows = thole.windows.sliding(fresh, { length = 10 }),
+            radius = "graph" }
         for _ = 1, 5 do bars:each { longest = 100 } end
     end)
 end)

@@ -53,7 +53,8 @@ test("the summary counts what was read and what is in view", function()
     local view <close> = net:between(4, 5)
     local v = view:summary()
     same({ v.events, v.contacts, v.nodes, v.links, v.rows, v.first, v.last }, { 1, 1, 2, 1, 5, 4, 4 })
-    same(tostring(s):match("^[^\n]*\n[^\n]*"), "source       thole.network\nrows         5, of which 4 became links")
+    same(tostring(s):match("^[^\n]*\n[^\n]*"),
+        "source       thole.network\nrows         5, of which 4 became links")
 end)
 
 test("an empty network is a network", function()
@@ -86,8 +87,10 @@ test("mistakes in events are named", function()
     refuse("event 1: from is the name of a node, not boolean", { { true, "B", 0 } })
     refuse("event 1: from is the name of a node, not number", { { 1.5, "B", 0 } })
     refuse("event 1 gives start twice, by its place and by its name", { { "A", "B", 0, start = 1 } })
-    refuse("event 1 has a key that is a number beyond 4: attributes have names", { { "A", "B", 0, 1, "ferry" } })
-    refuse('attribute "wet" of event 1 is a boolean: give a number or a text', { { "A", "B", 0, 1, wet = true } })
+    refuse("event 1 has a key that is a number beyond 4: attributes have names",
+        { { "A", "B", 0, 1, "ferry" } })
+    refuse('attribute "wet" of event 1 is a boolean: give a number or a text',
+        { { "A", "B", 0, 1, wet = true } })
     refuse('attribute "x" of event 2 is a text, before it was a number: give it one type',
         { { "A", "B", 0, 1, x = 1 }, { "A", "B", 0, 1, x = "1" } })
     refuse('attribute "x" of event 1 is not a number (nan): leave it out', { { "A", "B", 0, 1, x = 0 / 0 } })
@@ -95,13 +98,16 @@ test("mistakes in events are named", function()
     refuse('attribute "x" of event 2 cannot be kept exactly beside fractions: give it as a text',
         { { "A", "B", 0, 1, x = 0.5 }, { "A", "B", 0, 1, x = (1 << 53) + 1 } })
     refuse('unknown option "zon" of thole.network: did you mean "zone"?', {}, { zon = "UTC" })
-    refuse('option "unit" of thole.network is for plain numbers, but a zone is given: leave out one of them', {},
+    refuse('option "unit" of thole.network is for plain numbers, but a zone is given: leave out one of them',
+        {},
         { zone = "UTC", unit = "km" })
-    refuse('option "unit" of thole.network "a much too long name" has not 1 to 15 bytes', {}, { unit = "a much too long name" })
+    refuse('option "unit" of thole.network "a much too long name" has not 1 to 15 bytes', {},
+        { unit = "a much too long name" })
     refuse('option "zone" of thole.network is a text, not a number', {}, { zone = 1 })
     refuse("options of thole.network are a table, as in { name = value }, not a string", {}, "UTC")
     refuse("options of thole.network have names, as in { name = value }, not number keys", {}, { "UTC" })
-    refuse('attribute "duration" of event 1: a link has this word already, give another name', { { "A", "B", 0, 1, duration = 3 } })
+    refuse('attribute "duration" of event 1: a link has this word already, give another name',
+        { { "A", "B", 0, 1, duration = 3 } })
 end)
 
 test("finish before start is the core's to refuse, with the event's number", function()
@@ -116,18 +122,23 @@ test("misspelt fields are errors, not nil", function()
     raises("a network has no field with a number for its name", function() local _ = net[1] end)
     for link in net:each() do
         raises('a link has no field "seat": did you mean "seats"?', function() local _ = link.seat end)
-        raises("the fields of a link cannot be set: make a new network with thole.network", function() link.seats = 1 end)
+        raises("the fields of a link cannot be set: make a new network with thole.network",
+            function() link.seats = 1 end)
     end
-    raises('thole has no "read_contact": did you mean "read_contacts"?', function() local _ = thole.read_contact end)
-    raises('thole.windows has no "slidng": did you mean "sliding"?', function() local _ = thole.windows.slidng end)
-    raises("net:span takes a network, not a table: call it with a colon, as in net:summary()", function() net.span({}) end)
+    raises('thole has no "read_contact": did you mean "read_contacts"?',
+        function() local _ = thole.read_contact end)
+    raises('thole.windows has no "slidng": did you mean "sliding"?',
+        function() local _ = thole.windows.slidng end)
+    raises("net:span takes a network, not a table: call it with a colon, as in net:summary()",
+        function() net.span({}) end)
 end)
 
 test("the proxy shows the link that the loop is at, and none after it", function()
     local net <close> = thole.network(SMALL)
     local kept
     for link in net:each() do kept = kept or link end
-    raises("the loop that this link belongs to is over: take the fields that you need inside of it", function()
+    raises("the loop that this link belongs to is over: take the fields that you need inside of it",
+        function()
         local _ = kept.from
     end)
     same(tostring(kept), "link of a loop that is over")

@@ -57,7 +57,8 @@ print(fine, why)
         -- The shell waits until the script says that it begins.
         local fifo = t.folder() .. "fifo"
         local pipe = io.popen(("mkfifo '%s'; timeout -s KILL 60 '%s' '%s' > '%s' 2>&1 & job=$!; "):format(fifo, arg[-1],
-            script, fifo) .. ("{ read line; echo $line; sleep 0.3; kill -INT $job; cat; } < '%s'; wait $job"):format(fifo))
+            script, fifo)
+                .. ("{ read line; echo $line; sleep 0.3; kill -INT $job; cat; } < '%s'; wait $job"):format(fifo))
         local said = pipe:read("a")
         pipe:close()
         t.truth(said:find("^begins\n"), "that it began: " .. said)

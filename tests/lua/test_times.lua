@@ -14,7 +14,8 @@ end
 
 test("plain numbers come back as they went in", function()
     for _, x in ipairs { 0, 5, -3, 9223372036, -9223372036 } do same(through(x), x) end
-    for _, x in ipairs { 0.1, 0.25, 1.5, -1.25, 123456.789, 0.123456789, 1e-9, 1700000000.25 } do same(through(x), x) end
+    for _, x in ipairs { 0.1, 0.25, 1.5, -1.25, 123456.789, 0.123456789, 1e-9,
+        1700000000.25 } do same(through(x), x) end
 end)
 
 test("a whole number is an integer, however it was written", function()
@@ -33,15 +34,20 @@ test("a sum that is a hair beside a decimal is that decimal", function()
 end)
 
 test("what ticks cannot hold is refused", function()
-    raises("event 1: start: time 1e-10 is finer than 10^-9 of the unit: round it", function() thole.network { { "A", "B", 1e-10 } } end)
+    raises("event 1: start: time 1e-10 is finer than 10^-9 of the unit: round it",
+        function() thole.network { { "A", "B", 1e-10 } } end)
     raises('event 1: start: time "0.0000000001" is finer than 10^-9 of the unit: round it', function()
         thole.network { { "A", "B", "0.0000000001" } }
     end)
-    raises("event 1: start: time 9223372037 is out of range", function() thole.network { { "A", "B", 9223372037 } } end)
-    raises("event 1: start: time -9223372037 is out of range", function() thole.network { { "A", "B", -9223372037 } } end)
-    raises("event 1: start: time 1e+300 is out of range", function() thole.network { { "A", "B", 1e300 } } end)
+    raises("event 1: start: time 9223372037 is out of range",
+        function() thole.network { { "A", "B", 9223372037 } } end)
+    raises("event 1: start: time -9223372037 is out of range",
+        function() thole.network { { "A", "B", -9223372037 } } end)
+    raises("event 1: start: time 1e+300 is out of range",
+        function() thole.network { { "A", "B", 1e300 } } end)
     raises("event 1: start: time inf is out of range", function() thole.network { { "A", "B", 1 / 0 } } end)
-    raises("event 1: finish: a time is a text or a number, not a boolean", function() thole.network { { "A", "B", 1, true } } end)
+    raises("event 1: finish: a time is a text or a number, not a boolean",
+        function() thole.network { { "A", "B", 1, true } } end)
     raises('event 1: start: "soon" is not a time: the network\'s times are plain numbers, write for example 12.5', function()
         thole.network { { "A", "B", "soon" } }
     end)
@@ -89,12 +95,14 @@ test("durations are texts with units or numbers of the clock's unit", function()
     raises('option "length" of thole.windows.sliding: duration -1 is out of range', function()
         thole.windows.sliding(net, { length = -1 })
     end)
-    raises('option "length" of thole.windows.sliding: a duration is a text or a number, not a table', function()
+    raises('option "length" of thole.windows.sliding: a duration is a text or a number, not a table',
+        function()
         thole.windows.sliding(net, { length = {} })
     end)
     local km <close> = thole.network({ { "A", "B", 0, 100 } }, { unit = "km" })
     same(#thole.windows.sliding(km, { length = "25 km" }), 4)
-    raises('option "length" of thole.windows.sliding: "1 h" is not a duration: write a number of km', function()
+    raises('option "length" of thole.windows.sliding: "1 h" is not a duration: write a number of km',
+        function()
         thole.windows.sliding(km, { length = "1 h" })
     end)
 end)

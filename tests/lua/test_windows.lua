@@ -42,7 +42,8 @@ test("an overlap is exact to the tick", function()
     -- 3 * 10^-9 long, a third less: 2.000000001 ticks are 2
     same(#thole.windows.sliding(NET, { length = 3e-9, overlap = 0.333333333, start = 0, finish = 7e-9 }), 3)
     -- as long as ticks allow: the share of it does not overflow
-    same(sliding { length = 9000000000, overlap = 0.999999999, start = 0, finish = 9000000001 }, "0-9000000000 9-9000000009")
+    same(sliding { length = 9000000000, overlap = 0.999999999, start = 0, finish = 9000000001 },
+        "0-9000000000 9-9000000009")
 end)
 
 test("a contact at the very end is in a window", function()
@@ -54,20 +55,23 @@ test("a contact at the very end is in a window", function()
 end)
 
 test("calendar windows have local times", function()
-    local net <close> = thole.network({ { "A", "B", "2031-03-30T00:00", "2031-03-30T03:00" } }, { zone = "Atlantic/Azores" })
+    local net <close> = thole.network({ { "A", "B", "2031-03-30T00:00", "2031-03-30T03:00" } },
+        { zone = "Atlantic/Azores" })
     -- clocks go forward on that day, from 00:00-01:00 to 01:00+00:00
     same(sliding({ length = "1 h", start = "2031-03-29T23:00", finish = "2031-03-30T02:00" }, net),
         "2031-03-29T23:00:00-01:00-2031-03-30T01:00:00+00:00 2031-03-30T01:00:00+00:00-2031-03-30T02:00:00+00:00")
 end)
 
 test("lists of windows by place and by name", function()
-    same(shown(thole.windows.list(NET, { { 0, 10 }, { 10, 20, "second" }, { start = 15, finish = "40.5", label = "third" } })),
+    same(shown(thole.windows.list(NET, { { 0, 10 }, { 10, 20, "second" }, { start = 15, finish = "40.5",
+        label = "third" } })),
         "0-10 10-20:second 15-40.5:third")
     same(shown(thole.windows.list(NET, { { 0, 100 }, { 0, 101 }, { 5, 6, 7 } })), "0-100 0-101 5-6:7")
 end)
 
 test("windows out of order, or empty, are named", function()
-    for text, list in pairs { ["window 2"] = { { 5, 10 }, { 0, 20 } }, ["window 3"] = { { 0, 1 }, { 1, 2 }, { 3, 3 } } } do
+    for text, list in pairs { ["window 2"] = { { 5, 10 }, { 0, 20 } }, ["window 3"] = { { 0, 1 }, { 1, 2 },
+        { 3, 3 } } } do
         local fine, why = pcall(thole.windows.list, NET, list)
         t.truth(not fine and why:find(text, 1, true), tostring(why))
     end
@@ -113,19 +117,22 @@ test("an error in a rule is raised as it is", function()
 end)
 
 test("mistakes in rules are named", function()
-    raises("thole.windows.by has no windows: give at least one", function() thole.windows.by(NET, function() end) end)
+    raises("thole.windows.by has no windows: give at least one",
+        function() thole.windows.by(NET, function() end) end)
     raises("thole.windows.by takes a function, not a table", function() thole.windows.by(NET, {}) end)
     raises("window 1 of thole.windows.by has no start", function()
         thole.windows.by(NET, function() coroutine.yield() end)
     end)
-    raises("window 1 of thole.windows.by has no finish", function() thole.windows.by(NET, function() return 1 end) end)
+    raises("window 1 of thole.windows.by has no finish",
+        function() thole.windows.by(NET, function() return 1 end) end)
     raises("start of window 1 of thole.windows.by: a time is a text or a number, not a boolean", function()
         thole.windows.by(NET, function() return true, 1 end)
     end)
     raises("label of window 1 of thole.windows.by is a table: give a text", function()
         thole.windows.by(NET, function() return 0, 1, {} end)
     end)
-    raises("the function of thole.windows.by yielded windows and then returned one: yield that too", function()
+    raises("the function of thole.windows.by yielded windows and then returned one: yield that too",
+        function()
         thole.windows.by(NET, function() coroutine.yield(0, 1) return 1, 2 end)
     end)
 end)
@@ -138,15 +145,20 @@ test("mistakes in sliding are named", function()
     refuse('unknown option "lenght" of thole.windows.sliding: did you mean "length"?', { lenght = 1 })
     refuse('option "length" of thole.windows.sliding is 0: windows last some time', { length = 0 })
     refuse('option "step" of thole.windows.sliding is 0: windows go on in time', { length = 1, step = 0 })
-    refuse("thole.windows.sliding takes a step or an overlap, not both", { length = 1, step = 1, overlap = 0.5 })
-    refuse('option "overlap" of thole.windows.sliding is a share from 0 to below 1, not 1', { length = 1, overlap = 1 })
-    refuse('option "overlap" of thole.windows.sliding is a share from 0 to below 1, not nan', { length = 1, overlap = -(0 / 0) })
-    refuse('option "overlap" of thole.windows.sliding leaves no step between windows: lower it', { length = 2e-9, overlap = 0.9 })
+    refuse("thole.windows.sliding takes a step or an overlap, not both",
+        { length = 1, step = 1, overlap = 0.5 })
+    refuse('option "overlap" of thole.windows.sliding is a share from 0 to below 1, not 1',
+        { length = 1, overlap = 1 })
+    refuse('option "overlap" of thole.windows.sliding is a share from 0 to below 1, not nan',
+        { length = 1, overlap = -(0 / 0) })
+    refuse('option "overlap" of thole.windows.sliding leaves no step between windows: lower it',
+        { length = 2e-9, overlap = 0.9 })
     refuse('option "start" of thole.windows.sliding: "x" is not a time: the network\'s times are plain numbers, write for example 12.5',
         { length = 1, start = "x" })
     refuse("thole.windows.sliding takes a network, not a table", { length = 1 }, {})
     local empty <close> = thole.network {}
-    refuse("thole.windows.sliding finds no links to take the span from: give start and finish", { length = 1 }, empty)
+    refuse("thole.windows.sliding finds no links to take the span from: give start and finish",
+        { length = 1 }, empty)
     same(sliding({ length = 1, start = 0, finish = 2 }, empty), "0-1 1-2")
 end)
 
@@ -179,7 +191,8 @@ local function file(text) return thole.windows.list(NET, t.write("windows.csv", 
 test("windows from a file", function()
     same(shown(file "start,finish\n0,10\n10,20.5\n"), "0-10 10-20.5")
     same(shown(file "start,finish,label\n0,10,first\n10,20,\n"), "0-10:first 10-20")
-    same(shown(file "\239\187\191label;finish;start\r\n\"a;\"\"b\"\"\";10;0\r\n\r\n'c';20;10"), "0-10:a;\"b\" 10-20:'c'")
+    same(shown(file "\239\187\191label;finish;start\r\n\"a;\"\"b\"\"\";10;0\r\n\r\n'c';20;10"),
+        "0-10:a;\"b\" 10-20:'c'")
     same(shown(file "# made by hand\n\nstart\tfinish\tnote\n0\t10\tx\n"), "0-10")
 end)
 
@@ -192,8 +205,10 @@ test("faults in a file of windows are placed", function()
     refuse(": this file is empty: give a header start,finish and a window a line", "")
     refuse(": this file has a header but no windows", "start,finish\n")
     refuse(':1: there is no column "start": name the columns start, finish and perhaps label in the first line', "0,10\n")
-    refuse(":3:2: \"noon\" is not a time: the network's times are plain numbers, write for example 12.5", "start,finish\n0,1\n1,noon\n")
-    refuse(":4:1: \"x\" is not a time: the network's times are plain numbers, write for example 12.5", "# one\nstart,finish\n0,1\nx,2\n")
+    refuse(":3:2: \"noon\" is not a time: the network's times are plain numbers, write for example 12.5",
+        "start,finish\n0,1\n1,noon\n")
+    refuse(":4:1: \"x\" is not a time: the network's times are plain numbers, write for example 12.5",
+        "# one\nstart,finish\n0,1\nx,2\n")
     refuse(":2: 1 fields where the header has 2", "start,finish\n0\n")
     refuse(":2: a quote is opened but not closed: close it", 'start,finish\n"0,1\n')
     refuse(':2: "x" follows a closing quote: double quotes inside of quoted text', 'start,finish\n"0"x,1\n')

@@ -3,9 +3,10 @@
 -- For editors only: names, types and units. Made by lua/thole/describe.lua from lua/thole/api*.lua.
 
 --- On a calendar clock a time is ISO 8601 text with its offset, in the network's zone:
---- "2031-03-03T06:20:00-01:00". Where a time is taken, such text will do; without an offset it is local time. So will
---- a number: seconds since 1970-01-01T00:00:00Z. On a plain clock a time is a number, whole where it can be, and
---- numbers or their text are taken. All times are exact to a billionth of the unit; what is finer is refused.
+--- "2031-03-03T06:20:00-01:00". Where a time is taken, such text will do; without an offset it is local
+--- time. So will a number: seconds since 1970-01-01T00:00:00Z. On a plain clock a time is a number, whole
+--- where it can be, and numbers or their text are taken. All times are exact to a billionth of the unit;
+--- what is finer is refused.
 ---@alias thole.Time string|number
 
 --- Text with units, added up: "20 min", "1 h 30 min", "2 d"; or a number in the clock's unit, which is the
@@ -22,11 +23,12 @@
 ---@field unit string The unit of durations that are numbers: "s" on a calendar clock.
 local Network = {}
 
---- The links for which a filter holds. A table is run by the core, and holds where all of its conditions
---- do: mode = "ferry" (equal), route = { "A", "B" } (one of these), seats = { min = 40, max = 90 } (bounds included),
---- wet = true (there is a value) or false (there is none), any = { filter, … }, all = { filter, … },
---- no = filter. Fields are from, to, start, finish, duration and the attributes. A missing attribute fails every
---- comparison. A function is called with each link, and keeps those for which it returns neither false nor nil.
+--- The links for which a filter holds. A table is run by the core, and holds where all of its
+--- conditions do: mode = "ferry" (equal), route = { "A", "B" } (one of these), seats = { min = 40, max = 90
+--- } (bounds included), wet = true (there is a value) or false (there is none), any = { filter, … }, all =
+--- { filter, … }, no = filter. Fields are from, to, start, finish, duration and the attributes. A missing
+--- attribute fails every comparison. A function is called with each link, and keeps those for which it
+--- returns neither false nor nil.
 --- ```lua
 --- print(#net:keep { mode = "ferry" }, #net:keep { any = { { seats = { min = 100 } }, { seats = false } } })
 --- print(#net:keep(function(link) return link.duration > 1200 end))
@@ -43,8 +45,8 @@ function Network:keep(filter) end
 ---@return thole.Network # a view of the links left
 function Network:drop(filter) end
 
---- The links active at some instant from start on and before finish. They keep their own times. A contact is
---- active at its instant.
+--- The links active at some instant from start on and before finish. They keep their own
+--- times. A contact is active at its instant.
 --- ```lua
 --- print(#net:between("2031-03-03T06:00", "2031-03-03T06:20"))
 --- ```
@@ -53,8 +55,8 @@ function Network:drop(filter) end
 ---@return thole.Network # a view of these links
 function Network:between(start, finish) end
 
---- Goes through the links by start. The loop's variable is one object that shows each link in turn: take from it
---- what is needed, do not keep it.
+--- Goes through the links by start. The loop's variable is one object that shows each link in
+--- turn: take from it what is needed, do not keep it.
 --- ```lua
 --- for link in net:each() do
 ---     print(link.from, link.duration, link.seats)
@@ -95,9 +97,10 @@ function Network:summary() end
 ---@field max_memory? string|integer most memory to use, as "8 GB", or bytes (default: 80 % of the machine)
 ---@field block? integer positions that a block of time spans; results do not depend on it (default: chosen)
 
---- Computes which pieces, loops and holes last how long, as the zigzag of homology over the windows,
---- with coefficients in Z/2. Radius "graph" sees places and links alone; 0 sees places alone; 1 fills in all places that
---- are linked each to each; 2 and more do so with places that many links apart or nearer.
+--- Computes which pieces, loops and holes last how long, as the zigzag of homology over the
+--- windows, with coefficients in Z/2. Radius "graph" sees places and links alone; 0 sees places alone; 1
+--- fills in all places that are linked each to each; 2 and more do so with places that many links apart or
+--- nearer.
 --- ```lua
 --- local filled = net:zigzag { windows = cuts, radius = 1, dims = { 0, 1 } }
 --- print(#filled, filled:count { dim = 1 })
@@ -232,8 +235,8 @@ function Barcode:count(options) end
 ---@return integer[] # one number a window
 function Barcode:betti(dim, options) end
 
---- The exact text of a field of a bar, as files have it. On a plain clock a centre may lie between what numbers of
---- Lua can tell apart.
+--- The exact text of a field of a bar, as files have it. On a plain clock a centre may lie
+--- between what numbers of Lua can tell apart.
 --- ```lua
 --- print(bars:text(1, "birth"), bars:text(1, "last"))
 --- ```
@@ -297,10 +300,11 @@ thole.needed = nil
 ---@field min? number least value
 ---@field max? number greatest value
 
---- Declares what the user of the recipe can choose on the command line, as name=value, and returns the
---- values. Each parameter is name = default, or name = { default, help = …, … } with more to say; a default of
---- thole.needed means that the user must give it, and without any default the value may be nil. The type follows
---- from the default unless told. Called once in a recipe. `thole run RECIPE help` lists the parameters.
+--- Declares what the user of the recipe can choose on the command line, as name=value, and
+--- returns the values. Each parameter is name = default, or name = { default, help = …, … } with more to
+--- say; a default of thole.needed means that the user must give it, and without any default the value may
+--- be nil. The type follows from the default unless told. Called once in a recipe. `thole run RECIPE help`
+--- lists the parameters.
 --- ```lua
 --- local p = thole.params {
 ---     length = { "20 min", help = "length of a window" },
@@ -327,9 +331,9 @@ function thole.params(specs) end
 ---@field faulty? string "skip" counts faulty rows by reason instead (default: "stop")
 ---@field columns? string[] names of the other columns to keep as attributes (default: all)
 
---- Reads links from a file of delimited text, a row a link, plain or compressed by gzip, zstd or xz.
---- "-" is standard input. A row without a finish is a contact: a link of one instant. A row whose two ends are the
---- same place is counted and set aside. Memory follows the network, not the file.
+--- Reads links from a file of delimited text, a row a link, plain or compressed by gzip, zstd
+--- or xz. "-" is standard input. A row without a finish is a contact: a link of one instant. A row whose
+--- two ends are the same place is counted and set aside. Memory follows the network, not the file.
 --- ```lua
 --- thole.write("legs.csv", net)
 --- local legs = thole.read_contacts("legs.csv", { zone = "Atlantic/Azores" })
@@ -344,9 +348,9 @@ function thole.read_contacts(path, options) end
 ---@field zone? string time zone of calendar times, as "Atlantic/Azores" (default: UTC)
 ---@field unit? string name of the unit of plain numbers (default: "s")
 
---- Makes a network from Lua. An event is { from, to, start, finish }, by place or by name; without a
---- finish it is a contact. Other names are attributes, numbers or texts. Without zone and unit, the first start
---- tells whether times are calendar times.
+--- Makes a network from Lua. An event is { from, to, start, finish }, by place or by name;
+--- without a finish it is a contact. Other names are attributes, numbers or texts. Without zone and unit,
+--- the first start tells whether times are calendar times.
 --- ```lua
 --- local tides = thole.network { { "A", "B", 0, 6.2 }, { "B", "C", 3, 9.4, boats = 2 } }
 --- print(#tides, tides:span())
@@ -364,9 +368,9 @@ function thole.network(events, options) end
 ---@field title? string of an .svg
 ---@field width? number of an .svg, in pixels (default: 1200)
 
---- Writes a file in the format of its suffix: .csv, .jsonl (one JSON object a line) or .svg (a chart of a
---- barcode). The file is written beside its name and renamed into place when it is whole; after an error the old
---- file stands as it was. Text is written as it is.
+--- Writes a file in the format of its suffix: .csv, .jsonl (one JSON object a line) or .svg (a
+--- chart of a barcode). The file is written beside its name and renamed into place when it is whole; after
+--- an error the old file stands as it was. Text is written as it is.
 --- ```lua
 --- thole.write("loops.txt", bars, { format = function(b, out)
 ---     for bar in b:each { dim = 1 } do out:write(bar.opens, " ", bar.closes, "\n") end
@@ -378,12 +382,12 @@ function thole.network(events, options) end
 ---@param options? thole.WriteOptions see below
 function thole.write(path, thing, options) end
 
---- Writes one HTML file that holds everything it shows: it fetches nothing and runs no script. A
---- part is a table that begins with its name: { "account", net = net }, { "findings", bars =, net = },
---- { "betti", { bars, dim = 0, label = … }, … }, { "barcode", { bars, title = … }, … },
---- { "diagram", { bars, dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10 },
---- { "days", net =, bars = }, { "method", recipe =, parameters =, net =, bars = { … } }, { "text", title =, "…" },
---- { "caution" }. The list may have a title and a lead, the paragraph below it.
+--- Writes one HTML file that holds everything it shows: it fetches nothing and runs no script.
+--- A part is a table that begins with its name: { "account", net = net }, { "findings", bars =, net = }, {
+--- "betti", { bars, dim = 0, label = … }, … }, { "barcode", { bars, title = … }, … }, { "diagram", { bars,
+--- dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10 }, { "days", net =, bars = }, {
+--- "method", recipe =, parameters =, net =, bars = { … } }, { "text", title =, "…" }, { "caution" }. The
+--- list may have a title and a lead, the paragraph below it.
 --- ```lua
 --- thole.report("morning.html", { title = "A morning", { "account", net = net }, { "barcode", { bars } }, { "caution" } })
 --- ```
@@ -391,8 +395,8 @@ function thole.write(path, thing, options) end
 ---@param parts table the parts in their order, with title and lead
 function thole.report(path, parts) end
 
---- Sets how many worker threads the computation uses, and tells. Results are the same for any number. The
---- host sets it from --threads; in the stock interpreter it begins at 1.
+--- Sets how many worker threads the computation uses, and tells. Results are the same for any
+--- number. The host sets it from --threads; in the stock interpreter it begins at 1.
 --- ```lua
 --- print(thole.threads(2))
 --- ```
@@ -414,8 +418,9 @@ function thole.help(name) end
 ---@field start? thole.Time start of the first window (default: the links' first start)
 ---@field finish? thole.Time windows go on until one reaches it (default: the links' last finish)
 
---- Windows of one length, each starting a step after the one before. They begin at the first start of the links
---- and go on until one reaches their last finish; a contact at the very end is in a window too.
+--- Windows of one length, each starting a step after the one before. They begin at the first
+--- start of the links and go on until one reaches their last finish; a contact at the very end is in a
+--- window too.
 --- ```lua
 --- local w = thole.windows.sliding(net, { length = "20 min", overlap = 0.5 })
 --- print(#w, w[2].start)
@@ -425,8 +430,8 @@ function thole.help(name) end
 ---@return thole.Windows # in order
 function thole.windows.sliding(net, options) end
 
---- Windows that are listed: { start, finish, label } by place, or start =, finish =, label = by name; or
---- in a file of delimited text whose header names start, finish and perhaps label.
+--- Windows that are listed: { start, finish, label } by place, or start =, finish =, label =
+--- by name; or in a file of delimited text whose header names start, finish and perhaps label.
 --- ```lua
 --- local w = thole.windows.list(net, { { "2031-03-03T06:00", "2031-03-03T06:30", "early" },
 ---     { start = "2031-03-03T06:30", finish = "2031-03-03T07:30", label = "late" } })
