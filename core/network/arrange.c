@@ -5,35 +5,23 @@
  * it, with a small copy instead of one of everything. Every pass keeps the order of equals. */
 #include "network/arrange.h"
 
-enum { FEW = 24, AIM = 8, MOST_BITS = 12, KEYS = 4, NEAR = 1 << 15 };
+enum { FEW = 24, AIM = 2, MOST_BITS = 14, KEYS = 4, NEAR = 1 << 15, COUNTS = (1 << MOST_BITS) + 1 };
 
 static const uint64_t SIGN = UINT64_C(1) << 63;
-
-static inline uint32_t low_node(const thole_event *e) { return e->from < e->to ? e->from : e->to; }
-static inline uint32_t high_node(const thole_event *e) { return e->from < e->to ? e->to : e->from; }
 
 /* Key 0 .. 3 as a number that sorts as unsigned. */
 static inline uint64_t key_of(const thole_event *e, int key) {
     return key == 0   ? (uint64_t)e->start ^ SIGN
            : key == 1 ? (uint64_t)e->finish ^ SIGN
-           : key == 2 ? low_node(e)
-                      : high_node(e);
-}
-
-int tn_event_order(const thole_event *a, const thole_event *b) {
-    if (a->start != b->start)
-        return a->start < b->start ? -1 : 1;
-    if (a->finish != b->finish)
-        return a->finish < b->finish ? -1 : 1;
-    if (low_node(a) != low_node(b))
-        return low_node(a) < low_node(b) ? -1 : 1;
-    return high_node(a) < high_node(b) ? -1 : high_node(a) > high_node(b);
+           : key == 2 ? tn_low_node(e)
+                      : tn_high_node(e);
 }
 
 /* Two copies of everything; a part of the events is in one of them, at the same place. `rows` may be NULL. */
 typedef struct copies {
     thole_event *events[2];
     uint32_t *rows[2];
+    uint32_t *begin; /* COUNTS, for one spread at a time */
 } copies;
 
 static void insert(thole_event *events, uint32_t *rows, size_t n) {
@@ -69,8 +57,25 @@ static unsigned width_of(uint64_t value) {
     return n;
 }
 
+/* Move the n events from `first` on from copy `in` to the other, by ((key - least) >> shift), below `buckets`. */
+static void scatter(copies *c, int in, size_t first, size_t n, int key, uint64_t least, unsigned shift, size_t buckets) {
+    const thole_event *events = c->events[in] + first;
+    thole_event *to = c->events[1 - in] + first;
+    memset(c->begin, 0, (buckets + 1) * sizeof *c->begin);
+    for (size_t i = 0; i < n; i++)
+        c->begin[((key_of(&events[i], key) - least) >> shift) + 1]++;
+    for (size_t b = 0; b < buckets; b++)
+        c->begin[b + 1] += c->begin[b];
+    for (size_t i = 0; i < n; i++) {
+        uint32_t place = c->begin[(key_of(&events[i], key) - least) >> shift]++;
+        to[place] = events[i];
+        if (c->rows[0] != NULL)
+            c->rows[1 - in][first + place] = c->rows[in][first + i];
+    }
+}
+
 /* Sort the n events from `first` on, which lie in copy `in` and are equal in the keys before `key`, into copy 0. Each
- * level takes MOST_BITS off the range of one key, so that the recursion is at most 4 * 6 deep. */
+ * level takes some bits off the range of one key, at least two, so that the recursion is at most 96 deep. */
 static void spread(copies *c, int in, size_t first, size_t n, int key) {
     const thole_event *events = c->events[in] + first;
     uint64_t least = 0, most = 0;
@@ -93,23 +98,15 @@ static void spread(copies *c, int in, size_t first, size_t n, int key) {
     unsigned bits = width_of(n / AIM), width = width_of(most - least);
     bits = bits < MOST_BITS ? bits : MOST_BITS;
     unsigned shift = width > bits ? width - bits : 0;
-    uint32_t begin[(1 << MOST_BITS) + 1];
-    size_t buckets = (size_t)((most - least) >> shift) + 1;
-    memset(begin, 0, (buckets + 1) * sizeof *begin);
-    for (size_t i = 0; i < n; i++)
-        begin[((key_of(&events[i], key) - least) >> shift) + 1]++;
-    for (size_t b = 0; b < buckets; b++)
-        begin[b + 1] += begin[b];
-    thole_event *to = c->events[1 - in] + first;
-    for (size_t i = 0; i < n; i++) {
-        uint32_t place = begin[(key_of(&events[i], key) - least) >> shift]++;
-        to[place] = events[i];
-        if (c->rows[0] != NULL)
-            c->rows[1 - in][first + place] = c->rows[in][first + i];
+    scatter(c, in, first, n, key, least, shift, (size_t)((most - least) >> shift) + 1);
+    /* the buckets are found again by their keys, as `begin` is for the next spread */
+    const thole_event *to = c->events[1 - in] + first;
+    for (size_t from = 0, end; from < n; from = end) {
+        uint64_t bucket = (key_of(&to[from], key) - least) >> shift;
+        for (end = from + 1; end < n && (key_of(&to[end], key) - least) >> shift == bucket;)
+            end++;
+        spread(c, 1 - in, first + from, end - from, shift == 0 ? key + 1 : key);
     }
-    for (size_t b = 0, from = 0; b < buckets; from = begin[b++]) /* begin[b] is where bucket b ends now */
-        if (begin[b] > from)
-            spread(c, 1 - in, first + from, begin[b] - from, shift == 0 ? key + 1 : key);
 }
 
 /* ---- logs that are nearly in order ---------------------------------------- */
@@ -186,7 +183,8 @@ bool tn_arrange(thole_memory *memory, thole_event *events, size_t n, bool with_r
         for (i = 0; i < n; i++)
             c.rows[0][i] = (uint32_t)i;
     }
-    bool fine = make_copy(&c, memory, small), done = fine && arrange_near(&c, n);
+    c.begin = tb_resize(memory, NULL, 0, COUNTS, sizeof *c.begin);
+    bool fine = c.begin != NULL && make_copy(&c, memory, small), done = fine && arrange_near(&c, n);
     drop_copy(&c, memory, small);
     if (fine && !done) {
         fine = make_copy(&c, memory, n);
@@ -194,6 +192,7 @@ bool tn_arrange(thole_memory *memory, thole_event *events, size_t n, bool with_r
             spread(&c, 0, 0, n, 0);
         drop_copy(&c, memory, n);
     }
+    tb_free(memory, c.begin, COUNTS, sizeof *c.begin);
     if (fine)
         *row = c.rows[0];
     else
