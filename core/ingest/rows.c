@@ -6,38 +6,10 @@
 #include "base/memory.h"
 #include "base/parallel.h"
 #include "ingest/utf8.h"
+#include "ingest/words.h"
 
 /* MARGIN bytes beyond the data are line feeds: a search for one always ends, eight bytes at a time. */
 enum { MARGIN = TI_MARGIN };
-
-static const uint64_t ONES = UINT64_C(0x0101010101010101), HIGHS = UINT64_C(0x8080808080808080);
-
-/* The high bit of each byte of `word` that is zero. The sum does not carry from byte to byte. */
-static inline uint64_t zeros(uint64_t word) { return ~(((word & ~HIGHS) + ~HIGHS) | word) & HIGHS; }
-
-static inline uint64_t load(const char *at) {
-    uint64_t word;
-    memcpy(&word, at, sizeof word);
-#if defined(__BYTE_ORDER__) && __BYTE_ORDER__ == __ORDER_BIG_ENDIAN__
-    uint64_t turned = 0;
-    for (int i = 0; i < 8; i++)
-        turned |= (word >> (8 * i) & 0xFF) << (8 * (7 - i));
-    word = turned;
-#endif
-    return word;
-}
-
-/* Which byte, from the lowest, the lowest bit of a mark is in. */
-static inline size_t first_byte(uint64_t marks) {
-#if defined(__GNUC__)
-    return (size_t)__builtin_ctzll(marks) >> 3;
-#else
-    size_t n = 0;
-    for (; (marks & 0x80) == 0; marks >>= 8)
-        n++;
-    return n;
-#endif
-}
 
 /* ---- the block ----------------------------------------------------------- */
 
@@ -212,11 +184,11 @@ static const char *without_doubles(ti_rows *rows, const char *from, const char *
 /* The next quote from `p` on, or the end; notes on the way what else is met, and a little beyond. */
 static const char *find_quote(const char *p, scan *s, uint64_t *feeds) {
     for (;; p += 8) {
-        uint64_t word = load(p), marks = zeros(word ^ ONES * (unsigned char)'"');
-        s->odd |= word | (word - ONES);
-        *feeds |= zeros(word ^ ONES * (unsigned char)'\n');
+        uint64_t word = ti_load(p), marks = ti_zeros(word ^ TI_ONES * (unsigned char)'"');
+        s->odd |= word | (word - TI_ONES);
+        *feeds |= ti_zeros(word ^ TI_ONES * (unsigned char)'\n');
         if (marks != 0)
-            return p + first_byte(marks) < s->end ? p + first_byte(marks) : s->end;
+            return p + ti_first_byte(marks) < s->end ? p + ti_first_byte(marks) : s->end;
         if (s->end - p <= 8)
             return s->end;
     }
@@ -258,16 +230,16 @@ static outcome scan_quoted(ti_rows *rows, scan *s) {
 /* Fields without quotes, up to the line's end or a field that is not one of them. The marks of a word serve all fields
  * that end in it. */
 static outcome scan_bare(ti_rows *rows, scan *s) {
-    const uint64_t separators = ONES * (unsigned char)rows->separator, feeds = ONES * (unsigned char)'\n';
+    const uint64_t separators = TI_ONES * (unsigned char)rows->separator, feeds = TI_ONES * (unsigned char)'\n';
     const char *from = s->at, *base = from, *end = s->end;
-    uint64_t word = load(base), marks = zeros(word ^ separators) | zeros(word ^ feeds), odd = s->odd | word | (word - ONES);
+    uint64_t word = ti_load(base), marks = ti_zeros(word ^ separators) | ti_zeros(word ^ feeds), odd = s->odd | word | (word - TI_ONES);
     for (;;) {
         while (marks == 0) { /* at the latest the margin has some */
-            word = load(base += 8);
-            marks = zeros(word ^ separators) | zeros(word ^ feeds);
-            odd |= word | (word - ONES); /* the second sets the high bit of every NUL */
+            word = ti_load(base += 8);
+            marks = ti_zeros(word ^ separators) | ti_zeros(word ^ feeds);
+            odd |= word | (word - TI_ONES); /* the second sets the high bit of every NUL */
         }
-        const char *p = base + first_byte(marks);
+        const char *p = base + ti_first_byte(marks);
         marks &= marks - 1;
         if (p >= end) {
             p = end;
@@ -346,7 +318,7 @@ thole_status ti_rows_next(ti_rows *rows, bool *got, thole_error *error) {
         if (found == DONE) {
             *got = rows->n > 0;
             if (*got && rows->flaw == TI_SOUND) {
-                if ((s.odd & HIGHS) != 0)
+                if ((s.odd & TI_HIGHS) != 0)
                     check_bytes(rows, s.at);
                 rows->next_line = rows->line + s.lines + 1;
                 rows->begin = s.at < s.end ? (size_t)(s.at - rows->block) + 1 : rows->end;

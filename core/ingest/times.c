@@ -5,6 +5,7 @@
 
 #include "clock/iso8601.h"
 #include "clock/zone.h"
+#include "ingest/words.h"
 
 enum { DATE = 10, DAY = 86400 };
 
@@ -72,7 +73,12 @@ static bool read_alike(const ti_times *times, const char *text, size_t length, i
 
 thole_parse ti_times_read(ti_times *times, const char *text, size_t length, ti_time *out) {
     if (times->form != THOLE_TIME_ISO) {
-        thole_parse parse = thole_parse_decimal(text, length, &out->ticks);
+        int64_t number = length - 1 < 8 ? ti_short_number(text, length) : -1;
+        thole_parse parse = THOLE_PARSED;
+        if (number >= 0)
+            out->ticks = number * THOLE_TICKS_A_UNIT;
+        else
+            parse = thole_parse_decimal(text, length, &out->ticks);
         out->second = out->ticks;
         out->local = THOLE_LOCAL_ONCE;
         return parse;

@@ -26,6 +26,7 @@ typedef struct ti_times {
     int32_t local_offset;
 } ti_times;
 
+/* Eight bytes from `text` on may be read, whatever its length. */
 thole_parse ti_times_read(ti_times *times, const char *text, size_t length, ti_time *out);
 
 /* The form of a text: THOLE_TIME_PLAIN for a number, THOLE_TIME_ISO, or THOLE_TIME_FOUND when it is neither. */
