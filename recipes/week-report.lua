@@ -51,9 +51,9 @@ thole.report(p.out, {
         { graph, dim = 1, title = "Loops, radius graph" },
         { filled, dim = 0, title = "Pieces, radius 1" },
         { filled, dim = 1, title = "Loops, radius 1" } },
-    { "longest", bars = graph, dim = 1, most = p.longest, title = "The longest loops, radius graph" },
-    { "longest", bars = filled, dim = 1, most = p.longest, title = "The longest loops, radius 1" },
-    { "longest", bars = graph, dim = 0, most = p.longest },
+    { "longest", bars = graph, dim = 1, most = p.longest, net = net, title = "The longest loops, radius graph" },
+    { "longest", bars = filled, dim = 1, most = p.longest, net = net, title = "The longest loops, radius 1" },
+    { "longest", bars = graph, dim = 0, most = p.longest, net = net },
     { "account", net = net },
     { "method", recipe = "recipes/week-report.lua", parameters = p, net = net, bars = { graph, filled } },
 })

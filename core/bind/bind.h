@@ -33,6 +33,7 @@ thole_context *tl_context(lua_State *L);
 #define TL_CHOSEN "thole.chosen@1"
 #define TL_BLOCK "thole.block@1"
 #define TL_BUILD "thole.build@1"
+#define TL_CARRIERS "thole.carriers@1"
 #define TL_ZONE "thole.zone@1"
 
 /* ---- raise.c: errors ----------------------------------------------------------------------------- */
@@ -153,6 +154,9 @@ void tl_windows_set_clock(tl_windows *windows, const thole_clock *clock);
 
 /* lua_barcode.c: push a closed barcode and return where the core's goes. */
 thole_barcode **tl_push_barcode(lua_State *L);
+thole_barcode *tl_check_barcode(lua_State *L, int index, const char *of);
+/* The option "at", a window's number or the half between two, as a position; false when it is not given. */
+bool tl_option_position(lua_State *L, const tl_options *options, const thole_barcode *b, uint32_t *position);
 
 /* lua_link.c: push the proxy for the links of the network at `index`. It retains the network until
  * tl_link_over or its collection. */
@@ -184,6 +188,7 @@ void tl_open_times(lua_State *L);
 void tl_open_windows(lua_State *L);
 void tl_open_zigzag(lua_State *L);
 void tl_open_barcode(lua_State *L);
+void tl_open_carriers(lua_State *L);
 void tl_open_output(lua_State *L);
 
 #endif

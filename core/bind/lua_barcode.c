@@ -16,7 +16,7 @@ thole_barcode **tl_push_barcode(lua_State *L) {
     return &b->barcode;
 }
 
-static thole_barcode *check_barcode(lua_State *L, int index, const char *of) {
+thole_barcode *tl_check_barcode(lua_State *L, int index, const char *of) {
     barcode *b = luaL_testudata(L, index, TL_BARCODE);
     if (b == NULL) {
         tl_fail(L, "%s takes a barcode, not a %s: call it with a colon, as in bars:each()", of,
@@ -37,7 +37,7 @@ static int close_barcode(lua_State *L) {
 }
 
 static int length(lua_State *L) {
-    lua_pushinteger(L, (lua_Integer)thole_barcode_count(check_barcode(L, 1, "#")));
+    lua_pushinteger(L, (lua_Integer)thole_barcode_count(tl_check_barcode(L, 1, "#")));
     return 1;
 }
 
@@ -116,7 +116,7 @@ static void push_bar(lua_State *L, const thole_barcode *b, size_t i) {
 /* bars:text(index, field) -> the exact text of a field, as files have it. */
 static int exact_text(lua_State *L) {
     static const char *const names[] = {"birth", "death", "opens", "closes", "first", "last"};
-    thole_barcode *b = check_barcode(L, 1, "bars:text");
+    thole_barcode *b = tl_check_barcode(L, 1, "bars:text");
     lua_Integer index = luaL_checkinteger(L, 2);
     const char *field = luaL_checkstring(L, 3);
     if (index < 1 || (lua_Unsigned)index > thole_barcode_count(b))
@@ -144,8 +144,7 @@ static int exact_text(lua_State *L) {
 /* ---- choosing ------------------------------------------------------------------------------------ */
 
 /* A window's number, or the half between two, to a position. */
-static void choose_position(lua_State *L, const tl_options *options, const thole_barcode *b,
-                            thole_choice *choice) {
+bool tl_option_position(lua_State *L, const tl_options *options, const thole_barcode *b, uint32_t *position) {
     int type = tl_option(L, options, "at");
     size_t windows = thole_windows_count(thole_barcode_windows(b));
     lua_Number at = type == LUA_TNUMBER ? lua_tonumber(L, -1) * 2 - 2 : -1;
@@ -153,10 +152,10 @@ static void choose_position(lua_State *L, const tl_options *options, const thole
         if (!(at >= 0 && at <= 2 * (lua_Number)(windows - 1)) || at != (lua_Number)(uint32_t)at)
             tl_option_fail(L, options, "at", " is a window from 1 to %I, or the half between two, not %s",
                            (LUAI_UACINT)windows, luaL_tolstring(L, -1, NULL));
-        choice->at = true;
-        choice->position = (uint32_t)at;
+        *position = (uint32_t)at;
     }
     lua_pop(L, 1);
+    return type != LUA_TNIL;
 }
 
 static thole_choice choice_of(lua_State *L, int index, const thole_barcode *b, const char *of) {
@@ -180,7 +179,7 @@ static thole_choice choice_of(lua_State *L, int index, const thole_barcode *b, c
         tl_option_fail(L, &options, "shortest_lifespan", ": %s", lua_tostring(L, -1));
     lua_pop(L, 1);
     choice.shortest = (uint64_t)shortest;
-    choose_position(L, &options, b, &choice);
+    choice.at = tl_option_position(L, &options, b, &choice.position);
     return choice;
 }
 
@@ -214,7 +213,7 @@ static chosen *push_chosen(lua_State *L, const thole_barcode *b, int index, cons
 
 /* Upvalues: barcode, bars given so far, the chosen ones or nil for all. */
 static int next_bar(lua_State *L) {
-    thole_barcode *b = check_barcode(L, lua_upvalueindex(1), "bars:each");
+    thole_barcode *b = tl_check_barcode(L, lua_upvalueindex(1), "bars:each");
     size_t at = (size_t)lua_tointeger(L, lua_upvalueindex(2));
     const chosen *c = lua_touserdata(L, lua_upvalueindex(3));
     if (at >= (c == NULL ? thole_barcode_count(b) : c->n))
@@ -227,7 +226,7 @@ static int next_bar(lua_State *L) {
 
 /* bars:each{…} -> iterator of bars */
 static int each(lua_State *L) {
-    thole_barcode *b = check_barcode(L, 1, "bars:each");
+    thole_barcode *b = tl_check_barcode(L, 1, "bars:each");
     lua_settop(L, 2);
     lua_pushvalue(L, 1);
     lua_pushinteger(L, 0);
@@ -241,7 +240,7 @@ static int each(lua_State *L) {
 
 /* bars:count{…} -> how many */
 static int count(lua_State *L) {
-    thole_barcode *b = check_barcode(L, 1, "bars:count");
+    thole_barcode *b = tl_check_barcode(L, 1, "bars:count");
     lua_settop(L, 2);
     size_t n = lua_isnil(L, 2) ? thole_barcode_count(b) : push_chosen(L, b, 2, "bars:count")->n;
     lua_pushinteger(L, (lua_Integer)n);
@@ -251,7 +250,7 @@ static int count(lua_State *L) {
 /* bars:betti(dim, { joins = }) -> list */
 static int betti(lua_State *L) {
     static const char *const names[] = {"joins"};
-    thole_barcode *b = check_barcode(L, 1, "bars:betti");
+    thole_barcode *b = tl_check_barcode(L, 1, "bars:betti");
     lua_settop(L, 3);
     int whole = 0;
     lua_Integer dim = lua_type(L, 2) == LUA_TNUMBER ? lua_tointegerx(L, 2, &whole) : 0;
@@ -330,7 +329,7 @@ static int field(lua_State *L) {
         which++;
     if (which == FIELD_COUNT)
         return tl_no_field(L, "a barcode", lua_upvalueindex(1), FIELD_COUNT, FIELDS);
-    thole_barcode *b = check_barcode(L, 1, key);
+    thole_barcode *b = tl_check_barcode(L, 1, key);
     const thole_clock *clock = thole_barcode_clock(b);
     switch (which) {
     case 0: push_cells(L, b); break;

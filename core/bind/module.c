@@ -226,6 +226,7 @@ static void push_native(lua_State *L) {
     tl_open_keep(L);
     tl_open_windows(L);
     tl_open_barcode(L);
+    tl_open_carriers(L);
     tl_open_zigzag(L);
     tl_open_output(L);
 }

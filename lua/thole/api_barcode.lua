@@ -71,6 +71,20 @@ between what numbers of Lua can tell apart.]],
         example = 'print(bars:text(1, "birth"), bars:text(1, "last"))',
             prints = "2031-03-03T06:10:00-01:00\t4",
     },
+    {
+        name = "bars:carriers",
+        text = [[Which places the bars alive at a window or join run through there. A piece is told as its places;
+a bar that tells two pieces apart, as both. A loop is told as closed walks: places in order, the first not
+repeated; with triangles filled (radius 1 and up), two links in a row that a third bridges give way to
+it. Bars that begin or end together may be told in each other's mixtures.]],
+        args = { { "net", "network", "the network that the barcode was computed from" } },
+        options = { { "at", "number", nil, "window from 1, or the half between two" },
+            { "dim", "whole", "1", "0 for pieces, 1 for loops" } },
+        returns = { { "table", "a list with { bar = number of the bar, parts = lists of names } for each bar" } },
+        errors = { "another network, when that shows", "a dimension that was not computed" },
+        example = 'for _, loop in ipairs(bars:carriers(net, { at = 2 })) do print(loop.bar, table.concat(loop.parts[1], " – ")) end',
+        prints = "2\tBrindle Quay – Saltmarket – Customs Steps",
+    },
     { name = "bars:close", text = "Gives the barcode back.", args = {}, example = "bars:close()\nprint(bars)",
         prints = "closed barcode" },
     { name = "bar.dim", class = "thole.Bar", type = "whole",

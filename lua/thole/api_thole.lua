@@ -121,7 +121,7 @@ thole.write("bars.csv", bars)]],
         text = [[Writes one HTML file that holds everything it shows: it fetches nothing and runs no script.
 A part is a table that begins with its name: { "account", net = net }, { "findings", bars =, net = }, {
 "betti", { bars, dim = 0, label = … }, … }, { "barcode", { bars, title = … }, … }, { "diagram", { bars,
-dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10 }, { "days", net =, bars = }, {
+dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10, net = }, { "days", net =, bars = }, {
 "method", recipe =, parameters =, net =, bars = { … } }, { "text", title =, "…" }, { "caution" }. The
 list may have a title and a lead, the paragraph below it.]],
         args = { { "path", "text", "the file; in the host, from the folder of --out" },

@@ -285,3 +285,27 @@ test("mistakes in questions are named", function()
     t.truth(not fine and why:find("dimension 1 was not computed", 1, true), tostring(why))
     same(tostring(bars), "barcode of 2 bars")
 end)
+
+test("carriers name the places that a bar runs through", function()
+    -- A square in window 1; in window 2 its side C–D is gone and E hangs on it: no loop, one piece.
+    local net <close> = thole.network { { "A", "B", 0, 20 }, { "B", "C", 0, 20 }, { "C", "D", 0, 10 }, { "D", "A", 0, 20 },
+        { "B", "E", 10, 20 } }
+    local cuts = thole.windows.sliding(net, { length = 10 })
+    local bars <close> = net:zigzag { windows = cuts, radius = "graph" }
+    local loops = bars:carriers(net, { at = 1 })
+    same(#loops, 1)
+    same(#loops[1].parts, 1)
+    local names = table.concat(loops[1].parts[1])
+    t.truth(("ABCDABCD"):find(names, 1, true) or ("DCBADCBA"):find(names, 1, true), "a walk round the square: " .. names)
+    same(#bars:carriers(net, { at = 1.5 }), 1)
+    same(#bars:carriers(net, { at = 2 }), 0)
+    local pieces = bars:carriers(net, { at = 2, dim = 0 })
+    same(#pieces, 1)
+    same(pieces[1].parts, { { "A", "B", "C", "D", "E" } })
+    local other <close> = thole.network { { "A", "B", 0, 20 }, { "X", "Y", 0, 20 } }
+    raises("the barcode is of another network: ask with the network that it was computed from",
+        function() bars:carriers(other, { at = 1, dim = 0 }) end)
+    raises('option "at" of bars:carriers is missing: give a window\'s number, or the half between two',
+        function() bars:carriers(net) end)
+    raises('option "dim" of bars:carriers is 2: give 0 to 1', function() bars:carriers(net, { at = 1, dim = 2 }) end)
+end)

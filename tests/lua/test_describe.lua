@@ -104,6 +104,7 @@ test("the options described are those that are known", function()
         ["bars:each"] = function(o) bars:each(o) end,
         ["bars:count"] = function(o) bars:count(o) end,
         ["bars:betti"] = function(o) bars:betti(0, o) end,
+        ["bars:carriers"] = function(o) bars:carriers(net, o) end,
     }
     for _, name in ipairs(api.names()) do
         local entry = api.find(name)

@@ -245,6 +245,21 @@ function Barcode:betti(dim, options) end
 ---@return string # as in files
 function Barcode:text(index, field) end
 
+---@class thole.BarsCarriersOptions
+---@field at? number window from 1, or the half between two
+---@field dim? integer 0 for pieces, 1 for loops (default: 1)
+
+--- Which places the bars alive at a window or join run through there. A piece is told as its places;
+--- a bar that tells two pieces apart, as both. A loop is told as closed walks: places in order, the first not
+--- repeated; with triangles filled (radius 1 and up), two links in a row that a third bridges give way to
+--- it. Bars that begin or end together may be told in each other's mixtures.
+--- ```lua
+--- for _, loop in ipairs(bars:carriers(net, { at = 2 })) do print(loop.bar, table.concat(loop.parts[1], " – ")) end
+--- ```
+---@param net thole.Network the network that the barcode was computed from
+---@return table # a list with { bar = number of the bar, parts = lists of names } for each bar
+function Barcode:carriers(net) end
+
 --- Gives the barcode back.
 --- ```lua
 --- bars:close()
@@ -385,7 +400,7 @@ function thole.write(path, thing, options) end
 --- Writes one HTML file that holds everything it shows: it fetches nothing and runs no script.
 --- A part is a table that begins with its name: { "account", net = net }, { "findings", bars =, net = }, {
 --- "betti", { bars, dim = 0, label = … }, … }, { "barcode", { bars, title = … }, … }, { "diagram", { bars,
---- dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10 }, { "days", net =, bars = }, {
+--- dim = 1, title = … }, … }, { "longest", bars =, dim =, most = 10, net = }, { "days", net =, bars = }, {
 --- "method", recipe =, parameters =, net =, bars = { … } }, { "text", title =, "…" }, { "caution" }. The
 --- list may have a title and a lead, the paragraph below it.
 --- ```lua

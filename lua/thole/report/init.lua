@@ -26,7 +26,7 @@ local PARTS = {
         each = { dim = "number!", title = "string" } },
     findings = { make = require "thole.report.part_findings", takes = { bars = "barcode!" } },
     longest = { make = require "thole.report.part_longest",
-        takes = { bars = "barcode!", dim = "number!", most = "number" } },
+        takes = { bars = "barcode!", dim = "number!", most = "number", net = "network" } },
     method = { make = require "thole.report.part_method",
         takes = { recipe = "string!", parameters = "table!", net = "network!", bars = "table!" } },
     text = { make = require "thole.report.part_text", list = "string" },
