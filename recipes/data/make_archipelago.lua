@@ -57,7 +57,6 @@ local places = {
 -- ---- the week ---------------------------------------------------------------------------------
 
 local MONDAY, TUESDAY, WEDNESDAY, THURSDAY, FRIDAY, SATURDAY, SUNDAY = 1, 2, 3, 4, 5, 6, 7
-local STORM = THURSDAY
 local SAILING = { [MONDAY] = "plain", [TUESDAY] = "plain", [WEDNESDAY] = "plain", [THURSDAY] = "storm",
         [FRIDAY] = "plain", [SATURDAY] = "market", [SUNDAY] = "thin" }
 
