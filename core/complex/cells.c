@@ -16,7 +16,7 @@ thole_status tc_cells_refused(tc_work *work, const tc_block *block, int d, uint6
     else
         snprintf(what, sizeof what, "cells of dimension %d", d);
     unsigned first = block->first / 2 + 1, last = (block->last + 1) / 2 + 1;
-    if (!atomic_load(&memory->hit_ceiling) && memory->ceiling == 0)
+    if (!atomic_load(&memory->hit_ceiling))
         return thole_fail(work->error, THOLE_NO_MEMORY, "out of memory for %llu %s of windows %u to %u",
                           (unsigned long long)cells, what, first, last);
     return thole_fail(work->error, THOLE_LIMIT,
