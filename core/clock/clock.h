@@ -28,7 +28,8 @@ typedef struct thole_clock {
 /* Open an IANA zone by name ("Atlantic/Azores") from the system's zone files
  * (TZif, RFC 8536; TZDIR is honoured). THOLE_ARGUMENT for a name that is unknown, not a
  * relative path of letters, digits and "/_+-", or a file that is not TZif. */
-THOLE_API thole_status thole_zone_open(thole_context *context, const char *name, thole_zone **out, thole_error *error);
+THOLE_API thole_status thole_zone_open(thole_context *context, const char *name, thole_zone **out,
+                                       thole_error *error);
 THOLE_API thole_zone *thole_zone_retain(thole_zone *zone);
 THOLE_API void thole_zone_release(thole_zone *zone);
 THOLE_API const char *thole_zone_name(const thole_zone *zone); /* NULL zone: "UTC" */
@@ -66,8 +67,8 @@ THOLE_API thole_parse thole_parse_decimal(const char *text, size_t length, int64
  * Without an offset the time is local in `zone` (NULL: UTC); *local (may be NULL) tells whether
  * that time occurs once. 24:00:00 is the next day's 00:00; second 60 is taken as
  * the next minute's 00. */
-THOLE_API thole_parse thole_parse_iso8601(const char *text, size_t length, const thole_zone *zone, int64_t *ticks,
-                                          thole_local *local);
+THOLE_API thole_parse thole_parse_iso8601(const char *text, size_t length, const thole_zone *zone,
+                                          int64_t *ticks, thole_local *local);
 
 /* A duration in ticks of a unit of seconds: numbers with units, added up: "20 min",
  * "1 h 30 min", "2 d", "1.5 h", "1 week". Units ns, us, ms, s/sec/second(s), min/minute(s),
@@ -75,7 +76,8 @@ THOLE_API thole_parse thole_parse_iso8601(const char *text, size_t length, const
  * ISO 8601 durations of weeks, days, hours, minutes and seconds ("PT20M", "P1DT2H") too.
  * On a plain clock whose unit is not "s", only bare numbers, or numbers with that unit's
  * name, are durations. Negative ones are refused (THOLE_PARSE_RANGE). */
-THOLE_API thole_parse thole_parse_duration(const char *text, size_t length, const thole_clock *clock, int64_t *ticks);
+THOLE_API thole_parse thole_parse_duration(const char *text, size_t length, const thole_clock *clock,
+                                           int64_t *ticks);
 
 /* Write a time: plain clocks as the shortest exact decimal; calendar clocks as
  * ISO 8601 local time with offset, with a fraction only where it is not zero
@@ -83,7 +85,8 @@ THOLE_API thole_parse thole_parse_duration(const char *text, size_t length, cons
  * of four times are exact): plain clocks write it, calendar clocks drop it.
  * Returns the length; at most 47 characters and a NUL are written. */
 #define THOLE_TIME_SIZE 48
-THOLE_API size_t thole_format_time(const thole_clock *clock, int64_t ticks, int quarters, char out[THOLE_TIME_SIZE]);
+THOLE_API size_t thole_format_time(const thole_clock *clock, int64_t ticks, int quarters,
+                                   char out[THOLE_TIME_SIZE]);
 
 /* Write a duration for people: "1 h 30 min" on a clock of seconds, else the
  * number and the unit. */

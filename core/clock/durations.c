@@ -15,10 +15,10 @@ typedef struct unit {
 #define WEEK (7 * DAY)
 
 static const unit UNITS[] = {
-    {"ns", 1},          {"us", 1000},        {"ms", 1000000},  {"s", SECOND},   {"sec", SECOND},
-    {"second", SECOND}, {"seconds", SECOND}, {"min", MINUTE},  {"minute", MINUTE}, {"minutes", MINUTE},
-    {"h", HOUR},        {"hour", HOUR},      {"hours", HOUR},  {"d", DAY},      {"day", DAY},
-    {"days", DAY},      {"w", WEEK},         {"week", WEEK},   {"weeks", WEEK},
+    {"ns", 1},          {"us", 1000},        {"ms", 1000000}, {"s", SECOND},      {"sec", SECOND},
+    {"second", SECOND}, {"seconds", SECOND}, {"min", MINUTE}, {"minute", MINUTE}, {"minutes", MINUTE},
+    {"h", HOUR},        {"hour", HOUR},      {"hours", HOUR}, {"d", DAY},         {"day", DAY},
+    {"days", DAY},      {"w", WEEK},         {"week", WEEK},  {"weeks", WEEK},
 };
 
 typedef struct cursor {
@@ -97,7 +97,8 @@ static thole_parse parse_iso(cursor c, int64_t *ticks) {
         char letter;
         bool after_t;
         uint64_t ticks;
-    } PARTS[] = {{'W', false, WEEK}, {'D', false, DAY}, {'H', true, HOUR}, {'M', true, MINUTE}, {'S', true, SECOND}};
+    } PARTS[] = {
+        {'W', false, WEEK}, {'D', false, DAY}, {'H', true, HOUR}, {'M', true, MINUTE}, {'S', true, SECOND}};
     thole_parse worst = THOLE_PARSED;
     int64_t sum = 0;
     size_t part = 0;

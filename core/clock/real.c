@@ -1,8 +1,8 @@
 /* Decimal text to the nearest double, correctly rounded and without a locale.
  *
  * Up to 19 digits with a small power of ten are exact in one operation (Clinger, "How to read floating point
- * numbers accurately", PLDI 1990). Everything else goes the slow and sure way: the decimal is shifted by powers of
- * two, digit by digit, until its whole part is the mantissa. 768 digits decide any double; those
+ * numbers accurately", PLDI 1990). Everything else goes the slow and sure way: the decimal is shifted by
+ * powers of two, digit by digit, until its whole part is the mantissa. 768 digits decide any double; those
  * beyond KEPT only tell a tie from more than a tie. */
 #include <math.h>
 #include <string.h>

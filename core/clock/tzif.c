@@ -1,7 +1,7 @@
 /* Zone files: TZif, RFC 8536.
  *
- * The reader is our own because those of the C library and of common time libraries keep the zone in global state, as
- * tzset does, or end the process when memory runs out; the format is a small open standard. */
+ * The reader is our own because those of the C library and of common time libraries keep the zone in global
+ * state, as tzset does, or end the process when memory runs out; the format is a small open standard. */
 #include "clock/zone.h"
 
 enum { HEADER = 44, MOST_CHANGES = 100000 };
@@ -38,7 +38,8 @@ static const char *read_block(const unsigned char *bytes, size_t length, unsigne
     b.to = b.at + (size_t)b.changes * time_size;
     b.type = b.to + b.changes;
     b.text = b.type + (size_t)b.types * 6;
-    b.length = (size_t)(b.text - bytes) + b.letters + (size_t)b.leaps * (time_size + 4) + b.standard_flags + b.utc_flags;
+    b.length = (size_t)(b.text - bytes) + b.letters + (size_t)b.leaps * (time_size + 4) + b.standard_flags +
+               b.utc_flags;
     if (b.length > length)
         return "is cut short";
     *out = b;
@@ -104,7 +105,8 @@ const char *tk_tzif_read(const unsigned char *bytes, size_t length, thole_zone *
         return "counts leap seconds, which POSIX time does not: take the zone without \"right/\"";
     *refused = !TB_VEC_RESERVE(zone->memory, &zone->letters, b.letters) ||
                !TB_VEC_RESERVE(zone->memory, &zone->type, b.types) ||
-               !TB_VEC_RESERVE(zone->memory, &zone->at, b.changes) || !TB_VEC_RESERVE(zone->memory, &zone->to, b.changes);
+               !TB_VEC_RESERVE(zone->memory, &zone->at, b.changes) ||
+               !TB_VEC_RESERVE(zone->memory, &zone->to, b.changes);
     if (*refused)
         return NULL;
     if ((wrong = fill_types(&b, zone)) != NULL || (wrong = fill_changes(&b, zone)) != NULL)

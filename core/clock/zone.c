@@ -18,8 +18,8 @@ static bool is_name(const char *name) {
     size_t n = 0;
     for (; name[n] != '\0'; n++) {
         char c = name[n];
-        bool letter = (c >= 'A' && c <= 'Z') || (c >= 'a' && c <= 'z') || (c >= '0' && c <= '9') || c == '_' ||
-                      c == '+' || c == '-';
+        bool letter = (c >= 'A' && c <= 'Z') || (c >= 'a' && c <= 'z') || (c >= '0' && c <= '9') ||
+                      c == '_' || c == '+' || c == '-';
         bool parts = c == '/' && n > 0 && name[n - 1] != '/' && name[n + 1] != '\0';
         if (n + 1 >= TK_NAME_SIZE || (!letter && !parts))
             return false;
@@ -60,14 +60,16 @@ static thole_status load(thole_zone *zone, int file, thole_error *error) {
         unsigned char *bytes = tb_new(zone->memory, size, 1);
         refused = bytes == NULL;
         if (!refused)
-            wrong = read_all(file, bytes, size) ? tk_tzif_read(bytes, size, zone, &refused) : "could not be read";
+            wrong =
+                read_all(file, bytes, size) ? tk_tzif_read(bytes, size, zone, &refused) : "could not be read";
         tb_free(zone->memory, bytes, size, 1);
     }
     if (refused)
         return tb_refused(zone->memory, error, "a time zone");
     if (wrong != NULL)
         return thole_fail(error, THOLE_ARGUMENT,
-                          "the file of time zone \"%s\" %s: name a zone like Atlantic/Azores", zone->name, wrong);
+                          "the file of time zone \"%s\" %s: name a zone like Atlantic/Azores", zone->name,
+                          wrong);
     return THOLE_OK;
 }
 
@@ -87,16 +89,18 @@ thole_status thole_zone_open(thole_context *context, const char *name, thole_zon
     if (folder == NULL || folder[0] == '\0')
         folder = "/usr/share/zoneinfo";
     if (!is_name(name))
-        return thole_fail(error, THOLE_ARGUMENT, "\"%.100s\" is not the name of a time zone: name one like Atlantic/Azores",
-                          name);
+        return thole_fail(error, THOLE_ARGUMENT,
+                          "\"%.100s\" is not the name of a time zone: name one like Atlantic/Azores", name);
     int file = open_file(folder, name);
     if (file < 0) {
         struct stat about;
         if (stat(folder, &about) != 0)
             return thole_fail(error, THOLE_ARGUMENT,
-                              "no time zone files in \"%.300s\": install the system's package tzdata", folder);
+                              "no time zone files in \"%.300s\": install the system's package tzdata",
+                              folder);
         return thole_fail(error, THOLE_ARGUMENT,
-                          "unknown time zone \"%s\": take a name from \"%.300s\", like Atlantic/Azores", name, folder);
+                          "unknown time zone \"%s\": take a name from \"%.300s\", like Atlantic/Azores", name,
+                          folder);
     }
     thole_status status;
     thole_zone *zone = tb_new(context->memory, 1, sizeof *zone);
@@ -133,7 +137,8 @@ const char *thole_zone_name(const thole_zone *zone) { return zone != NULL ? zone
 
 static tk_stretch of_type(const thole_zone *zone, unsigned type, int64_t from, int64_t to) {
     const tk_type *t = &zone->type.at[type];
-    return (tk_stretch){.from = from, .to = to, .offset = t->offset, .letters = zone->letters.at + t->letters};
+    return (tk_stretch){
+        .from = from, .to = to, .offset = t->offset, .letters = zone->letters.at + t->letters};
 }
 
 tk_stretch tk_zone_stretch(const thole_zone *zone, int64_t seconds) {
@@ -155,7 +160,8 @@ tk_stretch tk_zone_stretch(const thole_zone *zone, int64_t seconds) {
             s.from = from;
         return s;
     }
-    return of_type(zone, low > 0 ? zone->to.at[low - 1] : 0, from, low < zone->at.n ? zone->at.at[low] : INT64_MAX);
+    return of_type(zone, low > 0 ? zone->to.at[low - 1] : 0, from,
+                   low < zone->at.n ? zone->at.at[low] : INT64_MAX);
 }
 
 int32_t thole_zone_offset(const thole_zone *zone, int64_t seconds, const char **abbreviation) {

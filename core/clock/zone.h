@@ -6,7 +6,7 @@
 #include "clock/clock.h"
 
 enum {
-    TK_NAME_SIZE = 128,  /* of a zone's name */
+    TK_NAME_SIZE = 128,   /* of a zone's name */
     TK_LETTERS_SIZE = 16, /* of an abbreviation in a rule, with its NUL */
     TK_WEST = -89999,     /* seconds: offsets further out are refused, after RFC 8536, 3.2 */
     TK_EAST = 93599
@@ -22,7 +22,7 @@ typedef struct tk_change {
 
 /* A zone's rule for the times after its table ends (the footer of a TZif file). */
 typedef struct tk_rule {
-    bool saves; /* whether there is a second time */
+    bool saves;        /* whether there is a second time */
     int32_t offset[2]; /* seconds east: standard, saving */
     char letters[2][TK_LETTERS_SIZE];
     tk_change start, end; /* of saving */
@@ -37,11 +37,11 @@ struct thole_zone {
     thole_memory *memory;
     tb_refs refs;
     char name[TK_NAME_SIZE];
-    TB_VEC(int64_t) at;     /* ascending instants at which the type changes */
-    TB_VEC(uint8_t) to;     /* the type from then on */
-    TB_VEC(tk_type) type;   /* type 0 holds before the first change */
-    TB_VEC(char) letters;   /* NUL-ended abbreviations */
-    bool has_rule;          /* whether `rule` holds after the last change */
+    TB_VEC(int64_t) at;   /* ascending instants at which the type changes */
+    TB_VEC(uint8_t) to;   /* the type from then on */
+    TB_VEC(tk_type) type; /* type 0 holds before the first change */
+    TB_VEC(char) letters; /* NUL-ended abbreviations */
+    bool has_rule;        /* whether `rule` holds after the last change */
     tk_rule rule;
 };
 
@@ -61,13 +61,13 @@ thole_local tk_zone_instants(const thole_zone *zone, int64_t local_seconds, int6
  * changes are near. */
 void tk_zone_steady(const thole_zone *zone, int64_t instant, int64_t *low, int64_t *high, int32_t *offset);
 
-/* A rule in the form of the environment variable TZ of POSIX.1-2008, chapter 8, with the wider hours and <...> names
- * that RFC 8536, 3.3.1 allows. False when the text is no such rule. */
+/* A rule in the form of the environment variable TZ of POSIX.1-2008, chapter 8, with the wider hours and
+ * <...> names that RFC 8536, 3.3.1 allows. False when the text is no such rule. */
 bool tk_rule_parse(const char *text, size_t length, tk_rule *out);
 tk_stretch tk_rule_stretch(const tk_rule *rule, int64_t seconds);
 
-/* Fill at, to, type, letters and the rule from the bytes of a TZif file (RFC 8536). NULL, or what is wrong with them;
- * *refused tells that memory was. The zone is to be cleared by the caller in any case. */
+/* Fill at, to, type, letters and the rule from the bytes of a TZif file (RFC 8536). NULL, or what is wrong
+ * with them; *refused tells that memory was. The zone is to be cleared by the caller in any case. */
 const char *tk_tzif_read(const unsigned char *bytes, size_t length, thole_zone *zone, bool *refused);
 
 /* a + b, held at the ends of the range. */

@@ -123,14 +123,15 @@ static int64_t change_local(const tk_change *change, int64_t year) {
 }
 
 tk_stretch tk_rule_stretch(const tk_rule *rule, int64_t seconds) {
-    tk_stretch s = {.from = INT64_MIN, .to = INT64_MAX, .offset = rule->offset[0], .letters = rule->letters[0]};
+    tk_stretch s = {
+        .from = INT64_MIN, .to = INT64_MAX, .offset = rule->offset[0], .letters = rule->letters[0]};
     if (!rule->saves)
         return s;
     int64_t year;
     int month, day;
     thole_date_from_days(seconds / DAY, &year, &month, &day);
-    /* The changes of the years around, in order: an end before a start at the same instant, so that saving all
-     * year (an end that is the next year's start) has no gap. Changes reach at most a week into the
+    /* The changes of the years around, in order: an end before a start at the same instant, so that saving
+     * all year (an end that is the next year's start) has no gap. Changes reach at most a week into the
      * neighbouring year. */
     struct {
         int64_t at;

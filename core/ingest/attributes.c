@@ -27,8 +27,8 @@ thole_value ti_value_of(const char *text, size_t length) {
         return value;
     }
     tk_number number;
-    if ((text[i] != '.' && text[i] != 'e' && text[i] != 'E') || tk_number_scan(text, length, &number) != length ||
-        (number.point && number.fraction == 0))
+    if ((text[i] != '.' && text[i] != 'e' && text[i] != 'E') ||
+        tk_number_scan(text, length, &number) != length || (number.point && number.fraction == 0))
         return value;
     value.real = tk_number_real(&number);
     if (isfinite(value.real))
@@ -36,9 +36,11 @@ thole_value ti_value_of(const char *text, size_t length) {
     return value;
 }
 
-static thole_status promote(ti_attribute *a, thole_builder *builder, thole_type type, uint64_t line, thole_error *error) {
+static thole_status promote(ti_attribute *a, thole_builder *builder, thole_type type, uint64_t line,
+                            thole_error *error) {
     thole_status status = thole_builder_promote(builder, a->column, type, error);
-    if (status == THOLE_LIMIT && type == THOLE_REAL && thole_builder_column_type(builder, a->column) == THOLE_INTEGER) {
+    if (status == THOLE_LIMIT && type == THOLE_REAL &&
+        thole_builder_column_type(builder, a->column) == THOLE_INTEGER) {
         type = THOLE_TEXT; /* it holds integers that no real holds */
         status = thole_builder_promote(builder, a->column, type, error);
     }
@@ -51,13 +53,14 @@ static thole_status promote(ti_attribute *a, thole_builder *builder, thole_type 
     size_t n = strlen(a->name), room = sizeof what - sizeof "integers of column \"\" became decimals";
     for (n = n < room ? n : room; n > 0 && ((unsigned char)a->name[n] & 0xC0u) == 0x80u; n--) {
     } /* not inside a character */
-    snprintf(what, sizeof what, "%s of column \"%.*s\" became %s", type == THOLE_REAL ? "integers" : "numbers", (int)n,
-             a->name, type == THOLE_REAL ? "decimals" : "text");
+    snprintf(what, sizeof what, "%s of column \"%.*s\" became %s",
+             type == THOLE_REAL ? "integers" : "numbers", (int)n, a->name,
+             type == THOLE_REAL ? "decimals" : "text");
     return thole_builder_remark(builder, what, line, error);
 }
 
-thole_status ti_attribute_set(ti_attribute *a, thole_builder *builder, const char *text, size_t length, uint64_t line,
-                              thole_error *error) {
+thole_status ti_attribute_set(ti_attribute *a, thole_builder *builder, const char *text, size_t length,
+                              uint64_t line, thole_error *error) {
     if (length == 0)
         return THOLE_OK;
     thole_value value = {.type = THOLE_TEXT, .present = true, .text = text, .length = length};

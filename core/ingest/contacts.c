@@ -14,7 +14,7 @@
 enum { FROM, TO, START, FINISH, DURATION, ROLES };
 static const char *const ROLE[ROLES] = {"from", "to", "start", "finish", "duration"};
 static const size_t ABSENT = SIZE_MAX;
-enum { MANY_ROWS = 1000 };
+enum { MANY_EVENTS = 1000 };
 
 typedef struct reader {
     thole_context *context;
@@ -26,14 +26,14 @@ typedef struct reader {
     ti_faults faults;
     size_t column[ROLES]; /* of the file, from 0, or ABSENT */
     thole_clock clock;
-    ti_times times; /* its form is THOLE_TIME_FOUND until the first row that tells */
+    ti_times times;         /* its form is THOLE_TIME_FOUND until the first row that tells */
     thole_builder *builder; /* once the form is known */
     ti_attribute *attributes;
     size_t attribute_n, attribute_cap;
     tb_names names; /* of the attributes */
     uint64_t blank_n, blank_line;
-    ti_recent *recent; /* after some rows */
-    uint64_t stored;   /* until then */
+    ti_recent *recent; /* after some events */
+    uint64_t stored;   /* events */
 } reader;
 
 /* ---- options ------------------------------------------------------------- */
@@ -52,7 +52,8 @@ static bool is_unit(const char *unit) {
         return false;
     for (size_t i = 0; i < n; i++) {
         unsigned char c = (unsigned char)unit[i];
-        if (c <= ' ' || c == 0x7F || c == '.' || c == '-' || c == '+' || c == ',' || c == '"' || (c >= '0' && c <= '9'))
+        if (c <= ' ' || c == 0x7F || c == '.' || c == '-' || c == '+' || c == ',' || c == '"' ||
+            (c >= '0' && c <= '9'))
             return false;
     }
     return true;
@@ -61,26 +62,34 @@ static bool is_unit(const char *unit) {
 static thole_status check_options(const thole_contacts_options *o, thole_error *error) {
     for (int role = FROM; role <= START; role++)
         if (!is_given(role_ref(o, role)))
-            return thole_fail(error, THOLE_ARGUMENT, "no column for %s: name one, or give its number", ROLE[role]);
+            return thole_fail(error, THOLE_ARGUMENT, "no column for %s: name one, or give its number",
+                              ROLE[role]);
     if (is_given(o->finish) && is_given(o->duration))
         return thole_fail(error, THOLE_ARGUMENT, "columns for both finish and duration: give one of them");
     for (int role = FROM; role < ROLES && o->headless; role++)
         if (role_ref(o, role).name != NULL)
-            return thole_fail(error, THOLE_ARGUMENT, "column \"%.60s\" for %s, but there is no header: give its number",
+            return thole_fail(error, THOLE_ARGUMENT,
+                              "column \"%.60s\" for %s, but there is no header: give its number",
                               role_ref(o, role).name, ROLE[role]);
     if (o->separator != 0 && o->separator != ',' && o->separator != ';' && o->separator != '\t')
-        return thole_fail(error, THOLE_ARGUMENT, "separator is not a comma, a semicolon or a tab: leave it out to have it found");
+        return thole_fail(error, THOLE_ARGUMENT,
+                          "separator is not a comma, a semicolon or a tab: leave it out to have it found");
     if (o->linger < 0)
         return thole_fail(error, THOLE_ARGUMENT, "linger is negative: give a duration");
     if (o->form > THOLE_TIME_PLAIN)
         return thole_fail(error, THOLE_ARGUMENT, "unknown form of time: iso, epoch or plain");
     if (o->zone != NULL && o->form == THOLE_TIME_PLAIN)
-        return thole_fail(error, THOLE_ARGUMENT, "zone \"%.100s\" with plain times: leave one of them out", o->zone);
+        return thole_fail(error, THOLE_ARGUMENT, "zone \"%.100s\" with plain times: leave one of them out",
+                          o->zone);
     if (o->unit != NULL && !is_unit(o->unit))
         return thole_fail(error, THOLE_ARGUMENT,
-                          "unit \"%.60s\" is not a name of 1 to 15 bytes without digits, spaces and signs: give one like km", o->unit);
-    if (o->unit != NULL && strcmp(o->unit, "s") != 0 && (o->zone != NULL || o->form == THOLE_TIME_ISO || o->form == THOLE_TIME_EPOCH))
-        return thole_fail(error, THOLE_ARGUMENT, "unit \"%s\" with calendar times, which are in seconds: leave it out", o->unit);
+                          "unit \"%.60s\" is not a name of 1 to 15 bytes without digits, spaces and signs: "
+                          "give one like km",
+                          o->unit);
+    if (o->unit != NULL && strcmp(o->unit, "s") != 0 &&
+        (o->zone != NULL || o->form == THOLE_TIME_ISO || o->form == THOLE_TIME_EPOCH))
+        return thole_fail(error, THOLE_ARGUMENT,
+                          "unit \"%s\" with calendar times, which are in seconds: leave it out", o->unit);
     return THOLE_OK;
 }
 
@@ -90,9 +99,11 @@ static thole_status find_roles(reader *r) {
     for (int role = FROM; role < ROLES; role++) {
         thole_column_ref ref = role_ref(r->options, role);
         r->column[role] = ABSENT;
-        if (!is_given(ref) || (role == FINISH && r->options->finish_may_miss && !ti_header_has(&r->header, ref.name)))
+        if (!is_given(ref) ||
+            (role == FINISH && r->options->finish_may_miss && !ti_header_has(&r->header, ref.name)))
             continue;
-        thole_status status = ti_header_find(&r->header, r->faults.name, ROLE[role], ref, &r->column[role], r->error);
+        thole_status status =
+            ti_header_find(&r->header, r->faults.name, ROLE[role], ref, &r->column[role], r->error);
         if (status != THOLE_OK)
             return status;
         for (int other = FROM; other < role; other++)
@@ -110,8 +121,8 @@ static bool is_role(const reader *r, size_t field) {
     return false;
 }
 
-/* Columns are told apart by name: one that has none, a link's own word, or a name of an earlier column, is called
- * by its number. */
+/* Columns are told apart by name: one that has none, a link's own word, or a name of an earlier column, is
+ * called by its number. */
 static thole_status name_attribute(reader *r, size_t field, const char **name) {
     static const char *const OWN[] = {"", "from", "to", "start", "finish", "duration"};
     enum { NUMBERED = 48 };
@@ -139,7 +150,8 @@ static thole_status add_attribute(reader *r, size_t field) {
     thole_status status = name_attribute(r, field, &name);
     if (status != THOLE_OK)
         return status;
-    if (!tb_reserve(r->context->memory, (void **)&r->attributes, &r->attribute_cap, r->attribute_n + 1, sizeof *r->attributes))
+    if (!tb_reserve(r->context->memory, (void **)&r->attributes, &r->attribute_cap, r->attribute_n + 1,
+                    sizeof *r->attributes))
         return tb_refused(r->context->memory, r->error, "the header");
     r->attributes[r->attribute_n++] = (ti_attribute){.name = name, .field = field, .type = THOLE_INTEGER};
     return THOLE_OK;
@@ -161,8 +173,8 @@ static thole_status find_attributes(reader *r) {
             status = add_attribute(r, field);
     for (size_t i = 0; !all && i < o->take_count && status == THOLE_OK; i++) {
         size_t field = 0;
-        status = ti_header_find(&r->header, r->faults.name, "an attribute", (thole_column_ref){.name = o->take[i]}, &field,
-                                r->error);
+        status = ti_header_find(&r->header, r->faults.name, "an attribute",
+                                (thole_column_ref){.name = o->take[i]}, &field, r->error);
         if (status == THOLE_OK && !is_taken(r, field))
             status = add_attribute(r, field);
     }
@@ -178,7 +190,8 @@ static thole_status declare_attributes(reader *r) {
         const char *written = r->header.name != NULL ? r->header.name[a->field] : a->name;
         if (status == THOLE_OK && written[0] != '\0' && strcmp(written, a->name) != 0) {
             char what[sizeof((thole_tally *)0)->what];
-            snprintf(what, sizeof what, "attribute \"%s\" goes by its number, as the name of column %zu is taken", a->name,
+            snprintf(what, sizeof what,
+                     "attribute \"%s\" goes by its number, as the name of column %zu is taken", a->name,
                      a->field + 1);
             status = thole_builder_remark(r->builder, what, r->header.line, r->error);
         }
@@ -195,7 +208,8 @@ static thole_status settle_form(reader *r, thole_time_form form) {
         form = r->clock.zone != NULL ? THOLE_TIME_EPOCH : THOLE_TIME_PLAIN;
     r->clock.kind = form == THOLE_TIME_PLAIN ? THOLE_PLAIN : THOLE_CALENDAR;
     if (r->clock.kind == THOLE_CALENDAR && strcmp(unit, "s") != 0)
-        return thole_fail(r->error, THOLE_ARGUMENT, "%s:%llu: unit \"%s\" with calendar times, which are in seconds: leave it out",
+        return thole_fail(r->error, THOLE_ARGUMENT,
+                          "%s:%llu: unit \"%s\" with calendar times, which are in seconds: leave it out",
                           r->faults.name, (unsigned long long)r->rows.line, unit);
     memcpy(r->clock.unit, unit, strlen(unit) + 1);
     r->times.form = form;
@@ -224,26 +238,31 @@ static thole_status role_fault(reader *r, int role, const char *reason, bool wit
 static thole_status time_fault(reader *r, int role, thole_parse parse) {
     bool iso = r->times.form == THOLE_TIME_ISO;
     if (parse == THOLE_PARSE_DIGITS)
-        return role_fault(r, role, "has digits finer than a tick", true, " has digits finer than 0.000000001: round it");
+        return role_fault(r, role, "has digits finer than a tick", true,
+                          " has digits finer than 0.000000001: round it");
     if (parse == THOLE_PARSE_RANGE)
         return role_fault(r, role, "is out of range", true,
                           iso ? " is out of range: expected a date and time that exist, from 1678 to 2261"
                               : " is out of range: expected a number between -9223372036 and 9223372036");
-    const char *after = iso ? " is not a time: expected ISO 8601 like 2031-05-04T06:20 or 2031-05-04T06:20:00-01:00"
-                        : r->times.form == THOLE_TIME_EPOCH ? " is not a time: expected seconds since 1970 like 1935645600"
-                        : r->times.form == THOLE_TIME_PLAIN ? " is not a time: expected a number like 1260 or 12.5"
-                        : " is not a time: expected ISO 8601 like 2031-05-04T06:20, or a number like 1260";
+    const char *after =
+        iso ? " is not a time: expected ISO 8601 like 2031-05-04T06:20 or 2031-05-04T06:20:00-01:00"
+        : r->times.form == THOLE_TIME_EPOCH ? " is not a time: expected seconds since 1970 like 1935645600"
+        : r->times.form == THOLE_TIME_PLAIN
+            ? " is not a time: expected a number like 1260 or 12.5"
+            : " is not a time: expected ISO 8601 like 2031-05-04T06:20, or a number like 1260";
     return role_fault(r, role, "is not a time", true, after);
 }
 
 static thole_status duration_fault(reader *r, thole_parse parse) {
     const ti_field *field = field_of(r, DURATION);
     if (parse == THOLE_PARSE_DIGITS)
-        return role_fault(r, DURATION, "has digits finer than a tick", true, " has digits finer than 0.000000001: round it");
+        return role_fault(r, DURATION, "has digits finer than a tick", true,
+                          " has digits finer than 0.000000001: round it");
     if (parse == THOLE_PARSE_RANGE && field->at[0] == '-')
         return role_fault(r, DURATION, "is negative", true, " is negative: expected 0 or more");
     if (parse == THOLE_PARSE_RANGE)
-        return role_fault(r, DURATION, "is out of range", true, " is out of range: start and finish must lie within 292 years of 0");
+        return role_fault(r, DURATION, "is out of range", true,
+                          " is out of range: start and finish must lie within 292 years of 0");
     return role_fault(r, DURATION, "is not a duration", true,
                       r->clock.kind == THOLE_CALENDAR || strcmp(r->clock.unit, "s") == 0
                           ? " is not a duration: expected one like 90, 20 min, 1 h 30 min or PT20M"
@@ -256,7 +275,8 @@ static thole_status check_filled(reader *r, bool *sound) {
         if (r->column[role] != ABSENT && field_of(r, role)->length == 0) {
             *sound = false;
             return role_fault(r, role, "is empty", false,
-                              role <= TO ? "is empty: expected the name of a node" : "is empty: expected a time");
+                              role <= TO ? "is empty: expected the name of a node"
+                                         : "is empty: expected a time");
         }
     return THOLE_OK;
 }
@@ -308,7 +328,8 @@ static thole_status read_finish(reader *r, thole_event *event, ti_time *finish, 
     if (event->start == event->finish && r->options->linger > 0) {
         if (event->start > INT64_MAX - r->options->linger) {
             *sound = false;
-            return role_fault(r, START, "is out of range", true, " is out of range with linger added: lower linger");
+            return role_fault(r, START, "is out of range", true,
+                              " is out of range with linger added: lower linger");
         }
         event->finish += r->options->linger;
     }
@@ -317,13 +338,13 @@ static thole_status read_finish(reader *r, thole_event *event, ti_time *finish, 
 
 /* ---- rows ---------------------------------------------------------------- */
 
-/* After some rows: what makes many rows fast. The rows so far tell how many there will be. */
+/* After some events: what makes many of them fast. The file so far tells how many there will be. */
 static thole_status expect_more(reader *r) {
     r->recent = tb_new(r->context->memory, 1, sizeof *r->recent);
     if (r->recent == NULL)
         return tb_refused(r->context->memory, r->error, "the names of nodes");
     double share = ti_source_share(r->source), come = (double)(r->rows.passed + r->rows.end);
-    double taken = (double)(r->rows.passed + r->rows.begin), rows = come / share / taken * MANY_ROWS * 1.02;
+    double taken = (double)(r->rows.passed + r->rows.begin), rows = come / share / taken * MANY_EVENTS * 1.02;
     if (share > 0.0 && rows < 4e9)
         tn_builder_expect(r->builder, (size_t)rows);
     return THOLE_OK;
@@ -332,14 +353,15 @@ static thole_status expect_more(reader *r) {
 static thole_status store(reader *r, thole_event event) {
     const ti_field *from = field_of(r, FROM), *to = field_of(r, TO);
     bool kept = false;
-    thole_status status = THOLE_OK;
-    if (r->recent == NULL && ++r->stored == MANY_ROWS && (status = expect_more(r)) != THOLE_OK)
-        return status;
-    status = ti_recent_node(r->recent, r->builder, from->at, from->length, &event.from, r->error);
+    thole_status status =
+        ti_recent_node(r->recent, r->builder, from->at, from->length, &event.from, r->error);
     if (status == THOLE_OK)
         status = ti_recent_node(r->recent, r->builder, to->at, to->length, &event.to, r->error);
     if (status == THOLE_OK)
         status = thole_builder_event(r->builder, event, &kept, r->error);
+    r->stored += kept;
+    if (kept && r->stored == MANY_EVENTS && status == THOLE_OK)
+        status = expect_more(r);
     for (size_t i = 0; i < r->attribute_n && kept && status == THOLE_OK; i++) {
         ti_attribute *a = &r->attributes[i];
         const ti_field *field = &r->rows.field[a->field];
@@ -390,8 +412,11 @@ static thole_status take_row(reader *r) {
     }
     const ti_field *last = &rows->field[rows->n - 1];
     char text[160];
-    snprintf(text, sizeof text, " is the last of %zu columns: expected %zu, parted by %s", rows->n, r->header.n,
-             rows->separator == ',' ? "\",\"" : rows->separator == ';' ? "\";\"" : "tabs");
+    snprintf(text, sizeof text, " is the last of %zu columns: expected %zu, parted by %s", rows->n,
+             r->header.n,
+             rows->separator == ','   ? "\",\""
+             : rows->separator == ';' ? "\";\""
+                                      : "tabs");
     return ti_fault(&r->faults, last->from, "too few columns", "field ", last, text, r->error);
 }
 
@@ -409,7 +434,8 @@ static thole_status read_top(reader *r) {
             return thole_fail(r->error, THOLE_INPUT, "%s: the file is empty: expected %s", r->faults.name,
                               r->options->headless ? "rows" : "a header line with the names of the columns");
         if (length > 0 && text[0] != '#') {
-            r->rows.separator = r->options->separator != 0 ? r->options->separator : ti_separator_of(text, length);
+            r->rows.separator =
+                r->options->separator != 0 ? r->options->separator : ti_separator_of(text, length);
             return THOLE_OK;
         }
         ti_rows_drop(&r->rows);
@@ -465,7 +491,8 @@ static thole_status read_source(reader *r, thole_network **out) {
     r->faults.name = ti_source_name(r->source);
     r->faults.rows = &r->rows;
     size_t left = ti_source_left(r->source); /* and a byte more, to see the end */
-    thole_status status = ti_rows_open(&r->rows, r->context, r->source, left < TI_BLOCK ? left + 1 : TI_BLOCK, r->error);
+    thole_status status =
+        ti_rows_open(&r->rows, r->context, r->source, left < TI_BLOCK ? left + 1 : TI_BLOCK, r->error);
     if (status == THOLE_OK)
         status = read_rows(r);
     if (status == THOLE_OK) {
@@ -484,7 +511,8 @@ static thole_status read_source(reader *r, thole_network **out) {
     return status;
 }
 
-static thole_status begin(reader *r, thole_context *context, const thole_contacts_options *options, thole_error *error) {
+static thole_status begin(reader *r, thole_context *context, const thole_contacts_options *options,
+                          thole_error *error) {
     *r = (reader){.context = context, .options = options, .error = error};
     thole_status status = check_options(options, error);
     if (status == THOLE_OK && options->zone != NULL)
@@ -492,8 +520,9 @@ static thole_status begin(reader *r, thole_context *context, const thole_contact
     return status;
 }
 
-thole_status thole_read_contacts(thole_context *context, const char *path, const thole_contacts_options *options,
-                                 thole_network **out, thole_error *error) {
+thole_status thole_read_contacts(thole_context *context, const char *path,
+                                 const thole_contacts_options *options, thole_network **out,
+                                 thole_error *error) {
     reader r;
     thole_status status = begin(&r, context, options, error);
     if (status == THOLE_OK)
@@ -504,8 +533,9 @@ thole_status thole_read_contacts(thole_context *context, const char *path, const
     return status;
 }
 
-thole_status thole_read_contacts_text(thole_context *context, const char *name, const char *text, size_t length,
-                                      const thole_contacts_options *options, thole_network **out, thole_error *error) {
+thole_status thole_read_contacts_text(thole_context *context, const char *name, const char *text,
+                                      size_t length, const thole_contacts_options *options,
+                                      thole_network **out, thole_error *error) {
     reader r;
     thole_status status = begin(&r, context, options, error);
     if (status == THOLE_OK)

@@ -2,8 +2,14 @@
  *
  * Text is UTF-8, a row a line; fields are parted by comma, semicolon or tab
  * (found from the header unless told), quoted as RFC 4180 has it; a byte-order mark and
- * CR LF are accepted; gzip, zstd and xz are unpacked. Blank lines, and lines before the header that begin with "#", are
- * passed over (and counted as remarks when there are any after the header).
+ * CR LF are accepted; gzip, zstd and xz are unpacked. Blank lines, and lines before the header (or the first
+ * row) that begin with "#", are passed over; blank ones after it are counted as a remark. A field holds at
+ * most 1 MiB, a row 16 MiB.
+ *
+ * Columns that no option names become attributes: integer where every value is written as an integer is ("7",
+ * not "007"), else real, else text. One whose name is empty, a link's own (from, to, start, finish, duration)
+ * or taken by an earlier column is called column5 by its number, as all are without a header; a remark says
+ * so.
  */
 #ifndef THOLE_CONTACTS_H
 #define THOLE_CONTACTS_H
@@ -18,7 +24,8 @@ typedef struct thole_column_ref {
 } thole_column_ref;
 
 typedef enum thole_time_form {
-    THOLE_TIME_FOUND, /* from the zone and the first data row: ISO 8601, else epoch seconds when a zone is given, else plain */
+    THOLE_TIME_FOUND, /* from the zone and the first data row: ISO 8601, else epoch seconds when a zone is
+                         given, else plain; eight digits (20310504) are a number */
     THOLE_TIME_ISO,
     THOLE_TIME_EPOCH, /* seconds since 1970-01-01T00:00:00Z, decimals allowed */
     THOLE_TIME_PLAIN
@@ -31,10 +38,12 @@ typedef enum thole_time_form {
  * linger: ticks added to the finish of contacts (start = finish); 0 leaves them instants.
  * separator: ',', ';', '\t', or 0 to find it.
  * headless: there is no header line; columns by number only.
- * zone: IANA zone of times without offset, and of display; NULL: UTC when times are ISO 8601.
- * unit: unit name of a plain clock; NULL is "s".
+ * zone: IANA zone of times without offset, and of display; NULL: UTC when times are ISO 8601. A local time
+ * that occurs twice is taken as the first, a finish that is then before its start as the second; one that
+ * never occurs moves on with the clock; remarks count them. unit: unit name of a plain clock; NULL is "s".
  * skip_faulty: count faulty rows by reason instead of stopping at the first.
- * take: names of extra columns to keep as attributes (take_count = SIZE_MAX, the default with take NULL and 0: all). */
+ * take: names of extra columns to keep as attributes (take_count = SIZE_MAX, the default with take NULL and
+ * 0: all). */
 typedef struct thole_contacts_options {
     thole_column_ref from, to, start, finish, duration;
     bool finish_may_miss;

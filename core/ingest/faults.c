@@ -24,7 +24,8 @@ thole_status ti_faults_attach(ti_faults *f, thole_builder *builder, thole_error 
     f->builder = builder;
     for (size_t i = 0; i < f->early_n; i++)
         for (uint64_t n = 0; n < f->early[i].count; n++) {
-            thole_status status = thole_builder_skip(builder, f->early[i].what, f->early[i].first_line, error);
+            thole_status status =
+                thole_builder_skip(builder, f->early[i].what, f->early[i].first_line, error);
             if (status != THOLE_OK)
                 return status;
         }
@@ -32,8 +33,8 @@ thole_status ti_faults_attach(ti_faults *f, thole_builder *builder, thole_error 
     return THOLE_OK;
 }
 
-thole_status ti_fault(ti_faults *f, size_t from, const char *reason, const char *before, const ti_field *value,
-                      const char *after, thole_error *error) {
+thole_status ti_fault(ti_faults *f, size_t from, const char *reason, const char *before,
+                      const ti_field *value, const char *after, thole_error *error) {
     if (f->skip)
         return count(f, reason, error);
     char quoted[TI_QUOTED_SIZE] = "";
@@ -51,23 +52,29 @@ thole_status ti_fault_flaw(ti_faults *f, size_t columns, thole_error *error) {
     switch (f->rows->flaw) {
     case TI_SOUND: break;
     case TI_NUL:
-        return ti_fault(f, field->from, "NUL byte", "field ", field, " holds a NUL byte: give delimited text in UTF-8", error);
+        return ti_fault(f, field->from, "NUL byte", "field ", field,
+                        " holds a NUL byte: give delimited text in UTF-8", error);
     case TI_NOT_UTF8:
-        return ti_fault(f, field->from, "not UTF-8", "field ", field, " is not UTF-8: save the file as UTF-8", error);
+        return ti_fault(f, field->from, "not UTF-8", "field ", field, " is not UTF-8: save the file as UTF-8",
+                        error);
     case TI_UNCLOSED:
-        return ti_fault(f, field->from, "quote not closed", "field ", field,
-                        " opens a quote that is never closed: close it, or double a quote that is meant as such", error);
+        return ti_fault(
+            f, field->from, "quote not closed", "field ", field,
+            " opens a quote that is never closed: close it, or double a quote that is meant as such", error);
     case TI_AFTER_QUOTE:
         return ti_fault(f, field->from, "text after a closing quote", "field ", field,
                         " goes on after its closing quote: double the quotes inside a quoted field", error);
     case TI_LONG_FIELD:
         return ti_fault(f, field->from, "field longer than 1 MiB", "field ", field,
-                        " is longer than 1 MiB: look for a quote that is not closed, or a wrong separator", error);
+                        " is longer than 1 MiB: look for a quote that is not closed, or a wrong separator",
+                        error);
     case TI_LONG_ROW:
         return ti_fault(f, 0, "row longer than 16 MiB", "row ", field,
-                        " is longer than 16 MiB: look for a quote that is not closed, or a wrong separator", error);
+                        " is longer than 16 MiB: look for a quote that is not closed, or a wrong separator",
+                        error);
     case TI_MANY:
-        snprintf(text, sizeof text, " is one column too many: expected %zu, put a field that holds the separator in quotes",
+        snprintf(text, sizeof text,
+                 " is one column too many: expected %zu, put a field that holds the separator in quotes",
                  columns);
         return ti_fault(f, field->from, "too many columns", "field ", field, text, error);
     }

@@ -4,8 +4,8 @@
 
 #include "ingest/header.h"
 
-/* Where faults go: to the error at the first one, or counted by reason. Before there is a builder (the clock is not
- * known yet) counts are kept here. */
+/* Where faults go: to the error at the first one, or counted by reason. Before there is a builder (the clock
+ * is not known yet) counts are kept here. */
 typedef struct ti_faults {
     const char *name;
     const ti_rows *rows;
@@ -18,11 +18,11 @@ typedef struct ti_faults {
     size_t early_n;
 } ti_faults;
 
-/* A fault of the row read last, in the field that begins at byte `from` of it: the text is "before value after",
- * value in quotes and left out when NULL. THOLE_OK when it was counted as `reason`; THOLE_INPUT with the message
- * otherwise. */
-thole_status ti_fault(ti_faults *faults, size_t from, const char *reason, const char *before, const ti_field *value,
-                      const char *after, thole_error *error);
+/* A fault of the row read last, in the field that begins at byte `from` of it: the text is "before value
+ * after", value in quotes and left out when NULL. THOLE_OK when it was counted as `reason`; THOLE_INPUT with
+ * the message otherwise. */
+thole_status ti_fault(ti_faults *faults, size_t from, const char *reason, const char *before,
+                      const ti_field *value, const char *after, thole_error *error);
 
 /* The fault that the row read last has by itself (rows->flaw); `columns` is how many it should have. */
 thole_status ti_fault_flaw(ti_faults *faults, size_t columns, thole_error *error);

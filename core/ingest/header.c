@@ -31,9 +31,11 @@ void ti_quote(const char *text, size_t length, char out[TI_QUOTED_SIZE]) {
         unsigned char c = (unsigned char)text[at];
         size_t bytes = c < 0x80 ? 1 : c < 0xE0 ? 2 : c < 0xF0 ? 3 : 4;
         if (bytes > length - at || ti_utf8_sound(text + at, bytes) != bytes || c < 0x20 || c == 0x7F) {
-            to += c == '\n' || c == '\t' || c == '\r'
-                      ? snprintf(to, 5, "\\%c", c == '\n' ? 'n' : c == '\t' ? 't' : 'r')
-                      : snprintf(to, 5, "\\x%02X", c);
+            to += c == '\n' || c == '\t' || c == '\r' ? snprintf(to, 5, "\\%c",
+                                                                 c == '\n'   ? 'n'
+                                                                 : c == '\t' ? 't'
+                                                                             : 'r')
+                                                      : snprintf(to, 5, "\\x%02X", c);
             at++;
         } else {
             if (c == '"')
@@ -103,8 +105,8 @@ static size_t number_of(const char *name) {
     return name[at] == '\0' ? n : 0;
 }
 
-static thole_status no_such_name(const ti_header *header, const char *name, const char *role, const char *wanted,
-                                 thole_error *error) {
+static thole_status no_such_name(const ti_header *header, const char *name, const char *role,
+                                 const char *wanted, thole_error *error) {
     char quoted[TI_QUOTED_SIZE], nearest[TI_QUOTED_SIZE] = "", list[400];
     ti_quote(wanted, strlen(wanted), quoted);
     list_names(header, list, sizeof list);
@@ -112,8 +114,8 @@ static thole_status no_such_name(const ti_header *header, const char *name, cons
     if (i < header->n)
         ti_quote(header->name[i], strlen(header->name[i]), nearest);
     return thole_fail(error, THOLE_INPUT, "%s:%llu: no column %s for %s: %s%s%sthe columns are %s", name,
-                      (unsigned long long)header->line, quoted, role, nearest[0] != '\0' ? "perhaps " : "", nearest,
-                      nearest[0] != '\0' ? ", " : "", list);
+                      (unsigned long long)header->line, quoted, role, nearest[0] != '\0' ? "perhaps " : "",
+                      nearest, nearest[0] != '\0' ? ", " : "", list);
 }
 
 bool ti_header_has(const ti_header *header, const char *name) {
@@ -123,15 +125,17 @@ bool ti_header_has(const ti_header *header, const char *name) {
     return false;
 }
 
-thole_status ti_header_find(const ti_header *header, const char *name, const char *role, thole_column_ref ref, size_t *column,
-                            thole_error *error) {
+thole_status ti_header_find(const ti_header *header, const char *name, const char *role, thole_column_ref ref,
+                            size_t *column, thole_error *error) {
     char quoted[TI_QUOTED_SIZE];
     size_t found = header->n;
     if (ref.name != NULL && header->name == NULL) {
         size_t number = number_of(ref.name);
         if (number == 0 || number > header->n)
-            return thole_fail(error, THOLE_INPUT, "%s: no column \"%.60s\" for %s: without a header they are column1 to column%zu",
-                              name, ref.name, role, header->n);
+            return thole_fail(
+                error, THOLE_INPUT,
+                "%s: no column \"%.60s\" for %s: without a header they are column1 to column%zu", name,
+                ref.name, role, header->n);
         *column = number - 1;
         return THOLE_OK;
     }
@@ -147,9 +151,10 @@ thole_status ti_header_find(const ti_header *header, const char *name, const cha
             continue;
         if (found < header->n) {
             ti_quote(ref.name, strlen(ref.name), quoted);
-            return thole_fail(error, THOLE_INPUT,
-                              "%s:%llu: columns %zu and %zu are both called %s: give the column for %s by number", name,
-                              (unsigned long long)header->line, found + 1, i + 1, quoted, role);
+            return thole_fail(
+                error, THOLE_INPUT,
+                "%s:%llu: columns %zu and %zu are both called %s: give the column for %s by number", name,
+                (unsigned long long)header->line, found + 1, i + 1, quoted, role);
         }
         found = i;
     }

@@ -3,8 +3,8 @@
 
 #include <string.h>
 
-thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length, uint32_t *node,
-                            thole_error *error) {
+thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length,
+                            uint32_t *node, thole_error *error) {
     uint64_t a = 0, b = 0;
     if (recent == NULL || length > TI_RECENT_LENGTH)
         return thole_builder_node(builder, text, length, node, error);

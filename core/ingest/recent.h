@@ -17,9 +17,9 @@ typedef struct ti_recent {
     ti_recent_name name[1 << TI_RECENT_BITS];
 } ti_recent;
 
-/* As thole_builder_node, which it asks where `recent` (may be NULL) does not know. Eight bytes from `text` on may be
- * read, whatever its length. */
-thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length, uint32_t *node,
-                            thole_error *error);
+/* As thole_builder_node, which it asks where `recent` (may be NULL) does not know. Eight bytes from `text` on
+ * may be read, whatever its length. */
+thole_status ti_recent_node(ti_recent *recent, thole_builder *builder, const char *text, size_t length,
+                            uint32_t *node, thole_error *error);
 
 #endif

@@ -20,7 +20,8 @@ static thole_status refused(ti_rows *rows, thole_error *error) {
 /* Read on, keeping what is from rows->begin on; the block grows when that fills more than half of it. */
 static thole_status refill(ti_rows *rows, thole_error *error) {
     thole_memory *memory = rows->context->memory;
-    thole_status status = tb_tick(rows->context, ti_source_phase(rows->source), ti_source_share(rows->source), error);
+    thole_status status =
+        tb_tick(rows->context, ti_source_phase(rows->source), ti_source_share(rows->source), error);
     if (status != THOLE_OK)
         return status;
     size_t kept = rows->end - rows->begin;
@@ -31,7 +32,8 @@ static thole_status refill(ti_rows *rows, thole_error *error) {
     rows->end = kept;
     if (kept > rows->cap / 2 || rows->cap == 0) {
         size_t cap = rows->cap == 0 ? rows->first_cap : rows->cap * 2;
-        char *fresh = tb_resize(memory, rows->block, rows->cap == 0 ? 0 : rows->cap + MARGIN, cap + MARGIN, 1);
+        char *fresh =
+            tb_resize(memory, rows->block, rows->cap == 0 ? 0 : rows->cap + MARGIN, cap + MARGIN, 1);
         if (fresh == NULL)
             return refused(rows, error);
         rows->block = fresh;
@@ -47,8 +49,10 @@ static thole_status refill(ti_rows *rows, thole_error *error) {
     return THOLE_OK;
 }
 
-thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block, thole_error *error) {
-    *rows = (ti_rows){.context = context, .source = source, .separator = ',', .most = TI_MOST_COLUMNS, .next_line = 1};
+thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block,
+                          thole_error *error) {
+    *rows = (ti_rows){
+        .context = context, .source = source, .separator = ',', .most = TI_MOST_COLUMNS, .next_line = 1};
     rows->first_cap = block > 0 ? block : 1;
     rows->arena.memory = context->memory;
     thole_status status = THOLE_OK;
@@ -58,8 +62,10 @@ thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *sour
         return status;
     if (rows->end >= 3 && memcmp(rows->block, "\xEF\xBB\xBF", 3) == 0)
         rows->begin = 3;
-    else if (rows->end >= 2 && (memcmp(rows->block, "\xFF\xFE", 2) == 0 || memcmp(rows->block, "\xFE\xFF", 2) == 0))
-        return thole_fail(error, THOLE_INPUT, "%s: the file is UTF-16: save it as UTF-8", ti_source_name(source));
+    else if (rows->end >= 2 &&
+             (memcmp(rows->block, "\xFF\xFE", 2) == 0 || memcmp(rows->block, "\xFE\xFF", 2) == 0))
+        return thole_fail(error, THOLE_INPUT, "%s: the file is UTF-16: save it as UTF-8",
+                          ti_source_name(source));
     return THOLE_OK;
 }
 
@@ -140,24 +146,27 @@ typedef enum outcome { DONE, MORE, NO_ROOM } outcome;
 /* A scan in progress. */
 typedef struct scan {
     const char *at, *end;
-    uint64_t odd;  /* high bits: a byte beyond ASCII, or perhaps a NUL, was met */
+    uint64_t odd;   /* high bits: a byte beyond ASCII, or perhaps a NUL, was met */
     uint64_t lines; /* line feeds inside quoted fields */
 } scan;
 
 static bool grow_fields(ti_rows *rows) {
-    return tb_reserve(rows->context->memory, (void **)&rows->field, &rows->field_cap, rows->n + 1, sizeof *rows->field);
+    return tb_reserve(rows->context->memory, (void **)&rows->field, &rows->field_cap, rows->n + 1,
+                      sizeof *rows->field);
 }
 
 static inline bool put_field(ti_rows *rows, const char *at, size_t length, const char *from) {
     if (rows->n == rows->field_cap && !grow_fields(rows))
         return false;
-    rows->field[rows->n++] = (ti_field){.at = at, .length = (uint32_t)length, .from = (uint32_t)(from - rows->row)};
+    rows->field[rows->n++] =
+        (ti_field){.at = at, .length = (uint32_t)length, .from = (uint32_t)(from - rows->row)};
     return true;
 }
 
 /* End the row at a flaw in the field from `from` on, with what there is of its text; go on after `resume`. */
 static outcome flawed(ti_rows *rows, ti_flaw flaw, const char *from, const char *to, const char *resume) {
-    if (!put_field(rows, from, (size_t)(to - from) < TI_MOST_FIELD ? (size_t)(to - from) : TI_MOST_FIELD, from))
+    if (!put_field(rows, from, (size_t)(to - from) < TI_MOST_FIELD ? (size_t)(to - from) : TI_MOST_FIELD,
+                   from))
         return NO_ROOM;
     rows->flaw = flaw;
     rows->skip = true;
@@ -227,12 +236,14 @@ static outcome scan_quoted(ti_rows *rows, scan *s) {
     return put_field(rows, text, length, from) ? DONE : NO_ROOM;
 }
 
-/* Fields without quotes, up to the line's end or a field that is not one of them. The marks of a word serve all fields
- * that end in it. */
+/* Fields without quotes, up to the line's end or a field that is not one of them. The marks of a word serve
+ * all fields that end in it. */
 static outcome scan_bare(ti_rows *rows, scan *s) {
-    const uint64_t separators = TI_ONES * (unsigned char)rows->separator, feeds = TI_ONES * (unsigned char)'\n';
+    const uint64_t separators = TI_ONES * (unsigned char)rows->separator,
+                   feeds = TI_ONES * (unsigned char)'\n';
     const char *from = s->at, *base = from, *end = s->end;
-    uint64_t word = ti_load(base), marks = ti_zeros(word ^ separators) | ti_zeros(word ^ feeds), odd = s->odd | word | (word - TI_ONES);
+    uint64_t word = ti_load(base), marks = ti_zeros(word ^ separators) | ti_zeros(word ^ feeds),
+             odd = s->odd | word | (word - TI_ONES);
     for (;;) {
         while (marks == 0) { /* at the latest the margin has some */
             word = ti_load(base += 8);

@@ -1,8 +1,8 @@
 /* Inside the core: delimited text as rows of fields, by a cursor over large blocks.
  *
- * Nothing is copied: a field is a stretch of the block, until the next call. Only a field with doubled quotes is
- * written out anew. A row that does not fit the block moves to its front, and the block grows with the longest row,
- * up to TI_MOST_ROW, never with the file. */
+ * Nothing is copied: a field is a stretch of the block, until the next call. Only a field with doubled quotes
+ * is written out anew. A row that does not fit the block moves to its front, and the block grows with the
+ * longest row, up to TI_MOST_ROW, never with the file. */
 #ifndef TI_ROWS_H
 #define TI_ROWS_H
 
@@ -30,7 +30,7 @@ typedef enum ti_flaw {
 } ti_flaw;
 
 typedef struct ti_field {
-    const char *at;  /* what it holds, without quotes */
+    const char *at; /* what it holds, without quotes */
     uint32_t length;
     uint32_t from; /* where it begins in the row, its quote included */
 } ti_field;
@@ -53,23 +53,25 @@ typedef struct ti_rows {
     uint64_t passed; /* bytes before the block */
     size_t field_cap;
     uint64_t next_line;
-    bool ended;   /* the source is at its end */
-    bool skip;    /* begin is inside a faulty line, the rest of which is to be passed over */
+    bool ended;     /* the source is at its end */
+    bool skip;      /* begin is inside a faulty line, the rest of which is to be passed over */
     tb_arena arena; /* fields with doubled quotes */
 } ti_rows;
 
-/* Begin reading, with blocks of `block` bytes at first (TI_BLOCK; less where the source is known to be smaller, or to
- * test). A byte-order mark is passed over, UTF-16 refused. The source stays the caller's. Clear with
- * ti_rows_close, after a failure too. */
-thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block, thole_error *error);
+/* Begin reading, with blocks of `block` bytes at first (TI_BLOCK; less where the source is known to be
+ * smaller, or to test). A byte-order mark is passed over, UTF-16 refused. The source stays the caller's.
+ * Clear with ti_rows_close, after a failure too. */
+thole_status ti_rows_open(ti_rows *rows, thole_context *context, ti_source *source, size_t block,
+                          thole_error *error);
 void ti_rows_close(ti_rows *rows);
 
 /* The line that comes next, without its end and without taking it; cut at 1 MiB. *text is NULL at the end. */
 thole_status ti_rows_peek(ti_rows *rows, const char **text, size_t *length, thole_error *error);
 void ti_rows_drop(ti_rows *rows); /* pass over the line peeked at */
 
-/* Read a row. A flaw is not a failure: the next call goes on at the next line (after an unclosed quote or text after
- * one: the line after that in which the row began). *got is false at the end. Ticks as blocks are read. */
+/* Read a row. A flaw is not a failure: the next call goes on at the next line (after an unclosed quote or
+ * text after one: the line after that in which the row began). *got is false at the end. Ticks as blocks are
+ * read. */
 thole_status ti_rows_next(ti_rows *rows, bool *got, thole_error *error);
 
 /* Where byte `from` of the row read last stands: its line, and its character there, both from 1. */

@@ -18,9 +18,9 @@ struct ti_source {
     thole_context *context;
     char name[MOST_NAME + 4];
     char phase[PHASE_SIZE];
-    int file;          /* -1 when the bytes are in memory */
+    int file; /* -1 when the bytes are in memory */
     bool close_file;
-    const char *text;  /* what is left of the bytes in memory */
+    const char *text; /* what is left of the bytes in memory */
     size_t length;
     uint64_t size, taken; /* bytes in all (0: not known), and read so far; packed where they are packed */
     unsigned char head[TI_MAGIC_SIZE]; /* read to tell the packing, not handed on yet */
@@ -64,7 +64,8 @@ static thole_status read_raw(ti_source *s, void *into, size_t room, size_t *n, t
         snprintf(why, sizeof why, "error %d", errno);
     if (why[0] >= 'A' && why[0] <= 'Z')
         why[0] = (char)(why[0] - 'A' + 'a');
-    return thole_fail(error, THOLE_FILE, "%s: reading failed (%s): check the file and its disk", s->name, why);
+    return thole_fail(error, THOLE_FILE, "%s: reading failed (%s): check the file and its disk", s->name,
+                      why);
 }
 
 static thole_status next_packed(void *user, const unsigned char **at, size_t *n, thole_error *error) {
@@ -91,7 +92,8 @@ static thole_status tell_packing(ti_source *s, thole_error *error) {
     const char *foreign;
     ti_packing packing = ti_packing_of(head, have, &foreign);
     if (foreign != NULL)
-        return thole_fail(error, THOLE_INPUT, "%s: the file is %s: unpack it first (gzip, zstd and xz are unpacked here)",
+        return thole_fail(error, THOLE_INPUT,
+                          "%s: the file is %s: unpack it first (gzip, zstd and xz are unpacked here)",
                           s->name, foreign);
     if (packing == TI_PLAIN)
         return THOLE_OK;
@@ -115,7 +117,8 @@ static ti_source *make(thole_context *context, const char *name) {
     const char *last = strrchr(name, '/');
     last = last != NULL && last[1] != '\0' ? last + 1 : name;
     size_t n = strlen(last), most = sizeof s->phase - sizeof "reading ";
-    for (n = n < most ? n : most; n > 0 && last[n] != '\0' && ((unsigned char)last[n] & 0xC0u) == 0x80u; n--) {
+    for (n = n < most ? n : most; n > 0 && last[n] != '\0' && ((unsigned char)last[n] & 0xC0u) == 0x80u;
+         n--) {
     } /* not inside a character */
     snprintf(s->phase, sizeof s->phase, "reading %.*s", (int)n, last);
     return s;
@@ -130,15 +133,17 @@ static thole_status open_file(ti_source *s, const char *path, thole_error *error
         s->close_file = s->file >= 0;
     }
     if (s->file < 0) {
-        const char *why = errno == ENOENT ? "there is no such file: check its name and folder"
+        const char *why = errno == ENOENT   ? "there is no such file: check its name and folder"
                           : errno == EACCES ? "it may not be read: check its permissions"
-                          : errno == ENOTDIR || errno == ENAMETOOLONG || errno == ELOOP ? "its path leads nowhere: check it"
-                                                                                        : "opening failed: check the file";
+                          : errno == ENOTDIR || errno == ENAMETOOLONG || errno == ELOOP
+                              ? "its path leads nowhere: check it"
+                              : "opening failed: check the file";
         return thole_fail(error, THOLE_FILE, "cannot open \"%s\": %s", s->name, why);
     }
     if (fstat(s->file, &about) == 0) {
         if (S_ISDIR(about.st_mode))
-            return thole_fail(error, THOLE_FILE, "cannot read \"%s\": it is a folder: name a file in it", s->name);
+            return thole_fail(error, THOLE_FILE, "cannot read \"%s\": it is a folder: name a file in it",
+                              s->name);
         if (S_ISREG(about.st_mode) && about.st_size > 0)
             s->size = (uint64_t)about.st_size;
     }
@@ -159,8 +164,8 @@ thole_status ti_source_open(thole_context *context, const char *path, ti_source 
     return status;
 }
 
-thole_status ti_source_text(thole_context *context, const char *name, const char *text, size_t length, ti_source **out,
-                            thole_error *error) {
+thole_status ti_source_text(thole_context *context, const char *name, const char *text, size_t length,
+                            ti_source **out, thole_error *error) {
     ti_source *s = make(context, name);
     if (s == NULL)
         return tb_refused(context->memory, error, "reading a text");

@@ -37,14 +37,16 @@ static thole_parse read_whole(ti_times *times, const char *text, size_t length, 
     return THOLE_PARSED;
 }
 
-/* "hh:mm:ss" as seconds of a day, by its eight bytes at once; negative when it is not that or not below 24:00:00. */
+/* "hh:mm:ss" as seconds of a day, by its eight bytes at once; negative when it is not that or not below
+ * 24:00:00. */
 static inline int32_t of_day(const char *text) {
     unsigned char t[8];
     memcpy(t, text, sizeof t);
     unsigned digit[6] = {t[0] - 48u, t[1] - 48u, t[3] - 48u, t[4] - 48u, t[6] - 48u, t[7] - 48u};
-    unsigned hour = digit[0] * 10 + digit[1], minute = digit[2] * 10 + digit[3], second = digit[4] * 10 + digit[5];
-    bool fine = digit[0] <= 2 && digit[1] <= 9 && digit[2] <= 5 && digit[3] <= 9 && digit[4] <= 5 && digit[5] <= 9 &&
-                hour <= 23 && t[2] == ':' && t[5] == ':';
+    unsigned hour = digit[0] * 10 + digit[1], minute = digit[2] * 10 + digit[3],
+             second = digit[4] * 10 + digit[5];
+    bool fine = digit[0] <= 2 && digit[1] <= 9 && digit[2] <= 5 && digit[3] <= 9 && digit[4] <= 5 &&
+                digit[5] <= 9 && hour <= 23 && t[2] == ':' && t[5] == ':';
     return fine ? (int32_t)(hour * 3600 + minute * 60 + second) : -1;
 }
 

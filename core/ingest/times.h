@@ -11,12 +11,12 @@ typedef struct ti_time {
     thole_local local;
 } ti_time;
 
-/* Zero-initialise, then set form (not THOLE_TIME_FOUND) and zone. Rows near each other share their date and their
- * offset, so that mostly only the time of day is new. */
+/* Zero-initialise, then set form (not THOLE_TIME_FOUND) and zone. Rows near each other share their date and
+ * their offset, so that mostly only the time of day is new. */
 typedef struct ti_times {
     thole_time_form form;
     const thole_zone *zone;
-    char date[10]; /* YYYY-MM-DD of the field before */
+    char date[10];  /* YYYY-MM-DD of the field before */
     char suffix[8]; /* its offset */
     uint32_t suffix_n;
     bool has_date, has_suffix;
@@ -29,7 +29,8 @@ typedef struct ti_times {
 /* Eight bytes from `text` on may be read, whatever its length. */
 thole_parse ti_times_read(ti_times *times, const char *text, size_t length, ti_time *out);
 
-/* The form of a text: THOLE_TIME_PLAIN for a number, THOLE_TIME_ISO, or THOLE_TIME_FOUND when it is neither. */
+/* The form of a text: THOLE_TIME_PLAIN for a number, THOLE_TIME_ISO, or THOLE_TIME_FOUND when it is neither.
+ */
 thole_time_form ti_time_form_of(const char *text, size_t length);
 
 #endif

@@ -1,7 +1,8 @@
 /* Unpacking: gzip by zlib, zstd and xz by libarchive.
  *
- * libarchive reads gzip too, but does not check a member's CRC and takes anything after the last member for the
- * end (3.6.2, measured: a file with one byte changed came out shorter, without an error). zlib checks both. */
+ * libarchive reads gzip too, but does not check a member's CRC and takes anything after the last member for
+ * the end (3.6.2, measured: a file with one byte changed came out shorter, without an error). zlib checks
+ * both. */
 #define ZLIB_CONST /* input is read only */
 #include "ingest/unpack.h"
 
@@ -38,8 +39,9 @@ ti_packing ti_packing_of(const unsigned char *head, size_t n, const char **forei
         return TI_GZIP;
     if (begins(head, n, "\x28\xb5\x2f\xfd", 4))
         return TI_ZSTD;
-    if (begins(head, n, "\xfd"
-                        "7zXZ",
+    if (begins(head, n,
+               "\xfd"
+               "7zXZ",
                6)) /* with the NUL that ends the literal */
         return TI_XZ;
     if (begins(head, n, "PK\x03\x04", 4))
@@ -62,7 +64,8 @@ static thole_status damaged(const ti_unpacker *u, const char *why, thole_error *
         why++;
     if (why == NULL || *why == '\0')
         why = "the data ends too early";
-    return thole_fail(error, THOLE_INPUT, "%s: the %s data is damaged or cut short (%.200s): fetch or pack it again", u->name,
+    return thole_fail(error, THOLE_INPUT,
+                      "%s: the %s data is damaged or cut short (%.200s): fetch or pack it again", u->name,
                       packing_name(u->packing), why);
 }
 
@@ -166,8 +169,8 @@ static thole_status archive_start(ti_unpacker *u, thole_error *error) {
     int code = u->packing == TI_ZSTD ? archive_read_support_filter_zstd(u->archive)
                                      : archive_read_support_filter_xz(u->archive);
     if (code != ARCHIVE_OK) /* it would start an outside program instead */
-        return thole_fail(error, THOLE_FILE, "%s: this libarchive cannot unpack %s: unpack the file first", u->name,
-                          packing_name(u->packing));
+        return thole_fail(error, THOLE_FILE, "%s: this libarchive cannot unpack %s: unpack the file first",
+                          u->name, packing_name(u->packing));
     archive_read_support_format_raw(u->archive);
     archive_read_support_format_empty(u->archive);
     code = archive_read_open(u->archive, u, NULL, archive_next, NULL);
@@ -182,8 +185,8 @@ static thole_status archive_start(ti_unpacker *u, thole_error *error) {
 
 /* ---- both ---------------------------------------------------------------- */
 
-thole_status ti_unpacker_open(thole_context *context, const char *name, ti_packing packing, ti_packed *next, void *user,
-                              ti_unpacker **out, thole_error *error) {
+thole_status ti_unpacker_open(thole_context *context, const char *name, ti_packing packing, ti_packed *next,
+                              void *user, ti_unpacker **out, thole_error *error) {
     ti_unpacker *u = tb_new(context->memory, 1, sizeof *u);
     if (u == NULL)
         return tb_refused(context->memory, error, "unpacking");

@@ -5,8 +5,8 @@
 #include <stdbool.h>
 #include <stddef.h>
 
-/* The length of the longest beginning that is UTF-8 (RFC 3629: shortest forms, no surrogates, up to U+10FFFF); NUL
- * counts as a character. */
+/* The length of the longest beginning that is UTF-8 (RFC 3629: shortest forms, no surrogates, up to
+ * U+10FFFF); NUL counts as a character. */
 size_t ti_utf8_sound(const char *text, size_t length);
 
 #endif

@@ -23,7 +23,9 @@ static inline uint64_t ti_load(const char *at) {
 }
 
 /* The high bit of each byte of `word` that is zero. The sum does not carry from byte to byte. */
-static inline uint64_t ti_zeros(uint64_t word) { return ~(((word & ~TI_HIGHS) + ~TI_HIGHS) | word) & TI_HIGHS; }
+static inline uint64_t ti_zeros(uint64_t word) {
+    return ~(((word & ~TI_HIGHS) + ~TI_HIGHS) | word) & TI_HIGHS;
+}
 
 /* Which byte, from the lowest, the lowest bit of a mark is in. */
 static inline size_t ti_first_byte(uint64_t marks) {
@@ -37,8 +39,8 @@ static inline size_t ti_first_byte(uint64_t marks) {
 #endif
 }
 
-/* A number of 1 to 8 digits, or -1 when it is not one; eight bytes from `text` on may be read. The digits go to the top
- * of a word, with zeros before them, and are added up in pairs, fours and eight. */
+/* A number of 1 to 8 digits, or -1 when it is not one; eight bytes from `text` on may be read. The digits go
+ * to the top of a word, with zeros before them, and are added up in pairs, fours and eight. */
 static inline int64_t ti_short_number(const char *text, size_t length) {
     uint64_t word = ti_load(text) << (64 - 8 * length);
     if (length < 8)

@@ -1,8 +1,8 @@
-/* Sorting events by spreading them over buckets of time, and each bucket again, until few are left in one. When all
- * starts in a bucket are equal, the finishes are spread, and then the nodes.
+/* Sorting events by spreading them over buckets of time, and each bucket again, until few are left in one.
+ * When all starts in a bucket are equal, the finishes are spread, and then the nodes.
  *
- * Logs are mostly in order of time already, or nearly: then they are sorted piece by piece, each merged into those before
- * it, with a small copy instead of one of everything. Every pass keeps the order of equals. */
+ * Logs are mostly in order of time already, or nearly: then they are sorted piece by piece, each merged into
+ * those before it, with a small copy instead of one of everything. Every pass keeps the order of equals. */
 #include "network/arrange.h"
 
 enum { FEW = 24, AIM = 2, MOST_BITS = 14, KEYS = 4, NEAR = 1 << 15, COUNTS = (1 << MOST_BITS) + 1 };
@@ -57,8 +57,10 @@ static unsigned width_of(uint64_t value) {
     return n;
 }
 
-/* Move the n events from `first` on from copy `in` to the other, by ((key - least) >> shift), below `buckets`. */
-static void scatter(copies *c, int in, size_t first, size_t n, int key, uint64_t least, unsigned shift, size_t buckets) {
+/* Move the n events from `first` on from copy `in` to the other, by ((key - least) >> shift), below
+ * `buckets`. */
+static void scatter(copies *c, int in, size_t first, size_t n, int key, uint64_t least, unsigned shift,
+                    size_t buckets) {
     const thole_event *events = c->events[in] + first;
     thole_event *to = c->events[1 - in] + first;
     memset(c->begin, 0, (buckets + 1) * sizeof *c->begin);
@@ -74,8 +76,9 @@ static void scatter(copies *c, int in, size_t first, size_t n, int key, uint64_t
     }
 }
 
-/* Sort the n events from `first` on, which lie in copy `in` and are equal in the keys before `key`, into copy 0. Each
- * level takes some bits off the range of one key, at least two, so that the recursion is at most 96 deep. */
+/* Sort the n events from `first` on, which lie in copy `in` and are equal in the keys before `key`, into copy
+ * 0. Each level takes some bits off the range of one key, at least two, so that the recursion is at most 96
+ * deep. */
 static void spread(copies *c, int in, size_t first, size_t n, int key) {
     const thole_event *events = c->events[in] + first;
     uint64_t least = 0, most = 0;
@@ -111,8 +114,8 @@ static void spread(copies *c, int in, size_t first, size_t n, int key) {
 
 /* ---- logs that are nearly in order ---------------------------------------- */
 
-/* Merge places mid .. end - 1, in order, into the places before them, in order too, when they reach back at most NEAR
- * places. Copy 1 has room for NEAR. */
+/* Merge places mid .. end - 1, in order, into the places before them, in order too, when they reach back at
+ * most NEAR places. Copy 1 has room for NEAR. */
 static bool merge_back(copies *c, size_t mid, size_t end) {
     thole_event *events = c->events[0], *left = c->events[1];
     uint32_t *rows = c->rows[0], *left_rows = c->rows[1];
@@ -141,8 +144,9 @@ static bool merge_back(copies *c, size_t mid, size_t end) {
     return true;
 }
 
-/* Sort by pieces of NEAR events, which stay in the cache, each merged into those before it. False when the events are
- * further from their order than that; they are in some other order then, with equals still in theirs. */
+/* Sort by pieces of NEAR events, which stay in the cache, each merged into those before it. False when the
+ * events are further from their order than that; they are in some other order then, with equals still in
+ * theirs. */
 static bool arrange_near(copies *c, size_t n) {
     for (size_t first = 0; first < n; first += NEAR) {
         size_t count = n - first < NEAR ? n - first : NEAR;

@@ -54,7 +54,9 @@ static thole_status refused(thole_builder *builder, thole_error *error) {
 }
 
 void tn_builder_expect(thole_builder *b, size_t events) {
-    if (events <= TN_MOST_EVENTS)
+    /* A guess must not be what reaches the ceiling. */
+    size_t ceiling = b->memory->ceiling, room = ceiling == 0 ? SIZE_MAX : ceiling / (8 * sizeof(thole_event));
+    if (events <= TN_MOST_EVENTS && events <= room)
         (void)TB_VEC_RESERVE(b->memory, &b->store->events, events);
 }
 

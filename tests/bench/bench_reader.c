@@ -1,7 +1,8 @@
 /* How fast contacts are read, against bare counting of fields by libcsv on the same file in the same run.
  *
- * bench_reader [ROWS [RUNS]]: files of ROWS rows (default 2,000,000) are written to TMPDIR (default /tmp) from a
- * fixed seed and removed again; each is read RUNS times (default 5) by both in turn, and the best time of each counts. */
+ * bench_reader [ROWS [RUNS]]: files of ROWS rows (default 2,000,000) are written to TMPDIR (default /tmp)
+ * from a fixed seed and removed again; each is read RUNS times (default 5) by both in turn, and the best time
+ * of each counts. */
 #include <csv.h>
 #include <fcntl.h>
 #include <stdio.h>
@@ -40,20 +41,21 @@ static uint64_t second_of(uint64_t i, uint64_t rows) { return i * 604800 / rows 
 
 static void short_row(FILE *file, uint64_t i, uint64_t rows) {
     uint64_t start = second_of(i, rows);
-    fprintf(file, "%u,%u,%u,%u\n", (unsigned)(next_random() % 500), (unsigned)(next_random() % 500), (unsigned)start,
-            (unsigned)(start + 60 + next_random() % 1200));
+    fprintf(file, "%u,%u,%u,%u\n", (unsigned)(next_random() % 500), (unsigned)(next_random() % 500),
+            (unsigned)start, (unsigned)(start + 60 + next_random() % 1200));
 }
 
 /* The same in the order of their nodes: the network has to be sorted. */
 static void unsorted_row(FILE *file, uint64_t i, uint64_t rows) {
     uint64_t start = next_random() % 604800;
-    fprintf(file, "%u,%u,%u,%u\n", (unsigned)(i * 500 / rows), (unsigned)(next_random() % 500), (unsigned)start,
-            (unsigned)(start + 60 + next_random() % 1200));
+    fprintf(file, "%u,%u,%u,%u\n", (unsigned)(i * 500 / rows), (unsigned)(next_random() % 500),
+            (unsigned)start, (unsigned)(start + 60 + next_random() % 1200));
 }
 
 static void put_time(FILE *file, uint64_t second, const char *offset) {
     unsigned day = (unsigned)(second / 86400), clock = (unsigned)(second % 86400);
-    fprintf(file, ",2031-05-%02uT%02u:%02u:%02u%s", 4 + day, clock / 3600, clock / 60 % 60, clock % 60, offset);
+    fprintf(file, ",2031-05-%02uT%02u:%02u:%02u%s", 4 + day, clock / 3600, clock / 60 % 60, clock % 60,
+            offset);
 }
 
 static void iso_row(FILE *file, uint64_t i, uint64_t rows, const char *offset) {
@@ -63,7 +65,8 @@ static void iso_row(FILE *file, uint64_t i, uint64_t rows, const char *offset) {
     put_time(file, start, offset);
     put_time(file, start + 60 + next_random() % 1200, offset);
     fprintf(file, ",%s,L%u,%u,%u.%u\n", MODES[next_random() % 3], (unsigned)(next_random() % 40),
-            20 + (unsigned)(next_random() % 100), 2 + (unsigned)(next_random() % 30), (unsigned)(next_random() % 10));
+            20 + (unsigned)(next_random() % 100), 2 + (unsigned)(next_random() % 30),
+            (unsigned)(next_random() % 10));
 }
 
 static void offset_row(FILE *file, uint64_t i, uint64_t rows) { iso_row(file, i, rows, "-01:00"); }
@@ -71,8 +74,9 @@ static void local_row(FILE *file, uint64_t i, uint64_t rows) { iso_row(file, i, 
 
 static void quoted_row(FILE *file, uint64_t i, uint64_t rows) {
     uint64_t start = second_of(i, rows);
-    fprintf(file, "\"Caf\xC3\xA9 \"\"Sol\"\", %u\",\"Pier, %u\",\"%u\",\"%u\"\n", (unsigned)(next_random() % 500),
-            (unsigned)(next_random() % 500), (unsigned)start, (unsigned)(start + 60));
+    fprintf(file, "\"Caf\xC3\xA9 \"\"Sol\"\", %u\",\"Pier, %u\",\"%u\",\"%u\"\n",
+            (unsigned)(next_random() % 500), (unsigned)(next_random() % 500), (unsigned)start,
+            (unsigned)(start + 60));
 }
 
 #define ROLES .from = {"from", 0}, .to = {"to", 0}, .start = {"start", 0}, .finish = {"finish", 0}
@@ -81,7 +85,9 @@ static const shape SHAPES[] = {
     {"short rows", "from,to,start,finish\n", short_row, {ROLES}},
     {"short rows out of order", "from,to,start,finish\n", unsorted_row, {ROLES}},
     {"ISO times, 4 attributes", "from,to,start,finish,mode,line,seats,price\n", offset_row, {ROLES}},
-    {"local ISO times, 4 attributes", "from,to,start,finish,mode,line,seats,price\n", local_row,
+    {"local ISO times, 4 attributes",
+     "from,to,start,finish,mode,line,seats,price\n",
+     local_row,
      {ROLES, .zone = "Atlantic/Azores"}},
     {"quoted fields", "from,to,start,finish\n", quoted_row, {ROLES}},
 };
@@ -119,7 +125,8 @@ static double by_libcsv(const char *path, counts *found) {
     return now() - begin;
 }
 
-static double by_thole(const char *path, const thole_contacts_options *options, uint64_t rows, size_t *bytes) {
+static double by_thole(const char *path, const thole_contacts_options *options, uint64_t rows,
+                       size_t *bytes) {
     thole_memory memory = {0};
     thole_context context = {.memory = &memory, .threads = 1};
     thole_network *network = NULL;
@@ -142,7 +149,8 @@ static double by_thole(const char *path, const thole_contacts_options *options, 
 static void measure(const shape *s, uint64_t rows, int runs) {
     char path[300];
     const char *folder = getenv("TMPDIR");
-    snprintf(path, sizeof path, "%.200s/bench-reader-XXXXXX", folder != NULL && folder[0] != '\0' ? folder : "/tmp");
+    snprintf(path, sizeof path, "%.200s/bench-reader-XXXXXX",
+             folder != NULL && folder[0] != '\0' ? folder : "/tmp");
     int made = mkstemp(path);
     FILE *file = made >= 0 ? fdopen(made, "w") : NULL;
     if (file == NULL)
@@ -166,9 +174,10 @@ static void measure(const shape *s, uint64_t rows, int runs) {
         thole = seconds < thole ? seconds : thole;
     }
     double megabytes = (double)about.st_size / 1e6;
-    printf("%-30s %7.1f MB  libcsv counts %6.2f Mrows/s %6.0f MB/s   thole %6.2f Mrows/s %6.0f MB/s   ratio %.2f   %.1f bytes an event kept\n",
-           s->name, megabytes, (double)rows / csv / 1e6, megabytes / csv, (double)rows / thole / 1e6, megabytes / thole,
-           thole / csv, (double)bytes / (double)rows);
+    printf("%-30s %7.1f MB  libcsv counts %6.2f Mrows/s %6.0f MB/s   thole %6.2f Mrows/s %6.0f MB/s   ratio "
+           "%.2f   %.1f bytes an event kept\n",
+           s->name, megabytes, (double)rows / csv / 1e6, megabytes / csv, (double)rows / thole / 1e6,
+           megabytes / thole, thole / csv, (double)bytes / (double)rows);
     unlink(path);
 }
 

@@ -19,7 +19,8 @@ static thole_context context = {.memory = &memory, .threads = 1};
 #define ROLES .from = {"from", 0}, .to = {"to", 0}, .start = {"start", 0}, .finish = {"finish", 0}
 static const thole_contacts_options USUAL = {ROLES};
 
-static inline thole_network *read_bytes(const char *text, size_t length, const thole_contacts_options *options) {
+static inline thole_network *read_bytes(const char *text, size_t length,
+                                        const thole_contacts_options *options) {
     thole_network *network = NULL;
     thole_error error;
     if (thole_read_contacts_text(&context, "log.csv", text, length, options, &network, &error) != THOLE_OK)
@@ -46,7 +47,8 @@ static inline void put(pad *p, const char *format, ...) {
     p->n += (size_t)n;
 }
 
-/* Events, one a line: "from>to start finish name=value ...", then the columns' types, then what was counted. */
+/* Events, one a line: "from>to start finish name=value ...", then the columns' types, then what was counted.
+ */
 static inline const char *describe(const thole_network *network, pad *p) {
     static const char *const TYPE[] = {"integer", "real", "text"};
     const thole_account *account = thole_network_account(network);
@@ -57,8 +59,8 @@ static inline const char *describe(const thole_network *network, pad *p) {
         char start[THOLE_TIME_SIZE], finish[THOLE_TIME_SIZE];
         thole_format_time(thole_network_clock(network), e.start, 0, start);
         thole_format_time(thole_network_clock(network), e.finish, 0, finish);
-        put(p, "%s>%s %s %s", thole_network_node_name(network, e.from, NULL), thole_network_node_name(network, e.to, NULL),
-            start, finish);
+        put(p, "%s>%s %s %s", thole_network_node_name(network, e.from, NULL),
+            thole_network_node_name(network, e.to, NULL), start, finish);
         for (uint32_t c = 0; c < thole_network_columns(network); c++) {
             thole_value value = thole_network_value(network, c, i);
             if (!value.present)
@@ -74,12 +76,15 @@ static inline const char *describe(const thole_network *network, pad *p) {
         put(p, "\n");
     }
     for (uint32_t c = 0; c < thole_network_columns(network); c++)
-        put(p, "%s: %s\n", thole_network_column_name(network, c), TYPE[thole_network_column_type(network, c)]);
+        put(p, "%s: %s\n", thole_network_column_name(network, c),
+            TYPE[thole_network_column_type(network, c)]);
     for (size_t i = 0; i < account->reason_count; i++)
-        put(p, "skipped: %s, %llu from line %llu\n", account->reasons[i].what, (unsigned long long)account->reasons[i].count,
+        put(p, "skipped: %s, %llu from line %llu\n", account->reasons[i].what,
+            (unsigned long long)account->reasons[i].count,
             (unsigned long long)account->reasons[i].first_line);
     for (size_t i = 0; i < account->remark_count; i++)
-        put(p, "remark: %s, %llu from line %llu\n", account->remarks[i].what, (unsigned long long)account->remarks[i].count,
+        put(p, "remark: %s, %llu from line %llu\n", account->remarks[i].what,
+            (unsigned long long)account->remarks[i].count,
             (unsigned long long)account->remarks[i].first_line);
     return p->text;
 }

@@ -1,4 +1,5 @@
-/* Where contacts come from: files, standard input, packed data whole and damaged; memory, refusals and stops. */
+/* Where contacts come from: files, standard input, packed data whole and damaged; memory, refusals and stops.
+ */
 #include "core/reading.h"
 
 #include <archive.h>
@@ -27,7 +28,8 @@ static void pack(packed *p, packing how, const char *text, size_t length) {
                                    : archive_write_add_filter_xz(archive),
                      ARCHIVE_OK);
     archive_write_set_bytes_per_block(archive, 0);
-    assert_int_equal(archive_write_open_memory(archive, p->bytes + p->n, sizeof p->bytes - p->n, &used), ARCHIVE_OK);
+    assert_int_equal(archive_write_open_memory(archive, p->bytes + p->n, sizeof p->bytes - p->n, &used),
+                     ARCHIVE_OK);
     archive_entry_set_filetype(entry, AE_IFREG);
     assert_int_equal(archive_write_header(archive, entry), ARCHIVE_OK);
     assert_int_equal(archive_write_data(archive, text, length), length);
@@ -45,7 +47,8 @@ static const char *make_log(void) {
     put(&p, "from,to,start,finish,mode\n");
     for (int i = 0; i < 150; i++) {
         unsigned r = (seed = seed * 1664525u + 1013904223u) >> 8;
-        put(&p, "\"Quay %u\",Pier %u,%d,%u,%s\n", r % 30, r / 32 % 30, i * 10, (unsigned)i * 10 + r % 999, r % 3 ? "ferry" : "bus");
+        put(&p, "\"Quay %u\",Pier %u,%d,%u,%s\n", r % 30, r / 32 % 30, i * 10, (unsigned)i * 10 + r % 999,
+            r % 3 ? "ferry" : "bus");
     }
     return p.text;
 }
@@ -68,7 +71,8 @@ static void test_packed(void **state) {
     const char *log = make_log(), *wanted = describe_log();
     size_t n = strlen(log), cut = n / 3;
     for (int how = 0; how < PACKINGS; how++) {
-        for (int members = 1; members <= 3; members++) { /* in one piece, in two, and with a piece that is empty */
+        for (int members = 1; members <= 3;
+             members++) { /* in one piece, in two, and with a piece that is empty */
             p.n = 0;
             if (members == 1)
                 pack(&p, (packing)how, log, n);
@@ -86,8 +90,11 @@ static void test_packed(void **state) {
         thole_error error;
         p.n = 0;
         pack(&p, (packing)how, "", 0);
-        assert_int_equal(thole_read_contacts_text(&context, "log.csv", (char *)p.bytes, p.n, &USUAL, &network, &error), THOLE_INPUT);
-        assert_string_equal(error.text, "log.csv: the file is empty: expected a header line with the names of the columns");
+        assert_int_equal(
+            thole_read_contacts_text(&context, "log.csv", (char *)p.bytes, p.n, &USUAL, &network, &error),
+            THOLE_INPUT);
+        assert_string_equal(
+            error.text, "log.csv: the file is empty: expected a header line with the names of the columns");
     }
 }
 
@@ -95,7 +102,8 @@ static void expect_damaged(const packed *p, size_t n, packing how) {
     thole_network *network = NULL;
     thole_error error;
     char begin[80];
-    thole_status status = thole_read_contacts_text(&context, "log.csv.x", (const char *)p->bytes, n, &USUAL, &network, &error);
+    thole_status status =
+        thole_read_contacts_text(&context, "log.csv.x", (const char *)p->bytes, n, &USUAL, &network, &error);
     snprintf(begin, sizeof begin, "log.csv.x: the %s data is damaged or cut short (", PACKING[how]);
     if (status != THOLE_INPUT || strncmp(error.text, begin, strlen(begin)) != 0)
         fail_msg("%s: status %d, \"%s\"", begin, (int)status, status == THOLE_OK ? "" : error.text);
@@ -121,12 +129,13 @@ static void test_cut_short(void **state) {
 static void expect_guarded(packed *p, const char *wanted) {
     static pad found;
     size_t same = 0;
-    for (size_t at = 4; at < p->n; at += p->n > 500 ? 5 : 1) {
+    for (size_t at = 4; at<p->n; at += p->n> 500 ? 5 : 1) {
         thole_network *network = NULL;
         thole_error error;
         unsigned char bit = (unsigned char)(1u << at % 8);
         p->bytes[at] ^= bit;
-        thole_status status = thole_read_contacts_text(&context, "log", (char *)p->bytes, p->n, &USUAL, &network, &error);
+        thole_status status =
+            thole_read_contacts_text(&context, "log", (char *)p->bytes, p->n, &USUAL, &network, &error);
         p->bytes[at] ^= bit;
         if (status == THOLE_OK) {
             assert_string_equal(describe(network, &found), wanted);
@@ -149,7 +158,8 @@ static void test_damaged(void **state) {
     p.n = 0;
     pack(&p, XZ, log, strlen(log));
     expect_guarded(&p, wanted);
-    /* libarchive writes zstd without a checksum, so that nothing could tell: this was written by the zstd command */
+    /* libarchive writes zstd without a checksum, so that nothing could tell: this was written by the zstd
+     * command */
     static const unsigned char ZSTD_FRAME[] = {
         0x28, 0xb5, 0x2f, 0xfd, 0x04, 0x68, 0x45, 0x02, 0x00, 0xd2, 0x03, 0x0d, 0x11, 0xa0, 0x2f, 0x06, 0xa0,
         0x99, 0x37, 0x3b, 0x91, 0x40, 0xa4, 0xdc, 0x02, 0x8b, 0xf6, 0xbf, 0x5d, 0x1e, 0xe0, 0xc6, 0x3f, 0xf1,
@@ -157,7 +167,9 @@ static void test_damaged(void **state) {
         0xa0, 0x51, 0x17, 0x1d, 0x73, 0x9d, 0xaa, 0x52, 0xcb, 0x6a, 0x28, 0x27, 0x0b, 0x06, 0x00, 0x52, 0x71,
         0x04, 0x2a, 0x8e, 0x38, 0xc5, 0x44, 0x54, 0x03, 0x40, 0xce, 0x78, 0x95, 0x27, 0x80, 0x2f, 0x6b, 0xfd};
     memcpy(p.bytes, ZSTD_FRAME, p.n = sizeof ZSTD_FRAME);
-    expect_guarded(&p, "Pier>Quay 1 2\nQuay>Mole 3 4\nMole>Pier 5 60\nPier>Quay 10 20\nQuay>Mole 30 40\nMole>Pier 50 60\n");
+    expect_guarded(
+        &p,
+        "Pier>Quay 1 2\nQuay>Mole 3 4\nMole>Pier 5 60\nPier>Quay 10 20\nQuay>Mole 30 40\nMole>Pier 50 60\n");
 }
 
 /* ---- files and standard input ------------------------------------------------ */
@@ -212,7 +224,8 @@ static void test_no_file(void **state) {
     static const struct {
         const char *path, *message;
     } BAD[] = {
-        {"no-such-file.csv", "cannot open \"no-such-file.csv\": there is no such file: check its name and folder"},
+        {"no-such-file.csv",
+         "cannot open \"no-such-file.csv\": there is no such file: check its name and folder"},
         {"", "cannot open \"\": there is no such file: check its name and folder"},
         {"/", "cannot read \"/\": it is a folder: name a file in it"},
         {"/dev/null/x", "cannot open \"/dev/null/x\": its path leads nowhere: check it"},
@@ -233,7 +246,8 @@ static void test_no_file(void **state) {
     dup2(kept, STDIN_FILENO);
     close(kept);
     assert_int_equal(status, THOLE_FILE);
-    assert_string_equal(error.text, "standard input: reading failed (bad file descriptor): check the file and its disk");
+    assert_string_equal(error.text,
+                        "standard input: reading failed (bad file descriptor): check the file and its disk");
 }
 
 /* A very long path leaves room for the rest of the message. */
@@ -245,15 +259,16 @@ static void test_long_name(void **state) {
     for (size_t i = 0; i + 2 < sizeof name; i += 2)
         memcpy(name + i, "\xC3\xA9", 2);
     name[sizeof name - 2] = '\0';
-    assert_int_equal(thole_read_contacts_text(&context, name, "x\n", 2, &USUAL, &network, &error), THOLE_INPUT);
+    assert_int_equal(thole_read_contacts_text(&context, name, "x\n", 2, &USUAL, &network, &error),
+                     THOLE_INPUT);
     assert_true(strncmp(error.text, "...\xC3\xA9", 5) == 0);
     assert_non_null(strstr(error.text, ":1: no column \"from\" for from: the columns are \"x\""));
 }
 
 /* ---- memory ------------------------------------------------------------------ */
 
-/* Memory follows the network: a long file of one link between nodes over and over holds only events; of nothing but
- * self-loops, nothing. */
+/* Memory follows the network: a long file of one link between nodes over and over holds only events; of
+ * nothing but self-loops, nothing. */
 static void test_streams(void **state) {
     (void)state;
     enum { ROWS = 300000, MEGABYTE = 1 << 20 };
@@ -297,8 +312,9 @@ static const char *make_rich(void) {
     p.n = 0;
     put(&p, "from,to,start,finish,start,mode,seats,wait\n\nx\n");
     for (int i = 0; i < 150; i++)
-        put(&p, "\"Quay \"\"%d\"\"\",Pier %d,2031-03-%02dT00:%02d,2031-10-26T00:%02d:00,%d,%s,%s,%d\n", i % 20, 150 - i, 1 + i % 31,
-            i % 60, i % 60, i, i % 2 ? "ferry" : "bus", i == 100 ? "2.5" : "40", i);
+        put(&p, "\"Quay \"\"%d\"\"\",Pier %d,2031-03-%02dT00:%02d,2031-10-26T00:%02d:00,%d,%s,%s,%d\n",
+            i % 20, 150 - i, 1 + i % 31, i % 60, i % 60, i, i % 2 ? "ferry" : "bus", i == 100 ? "2.5" : "40",
+            i);
     put(&p, "a,b,2031-05-04,2031-05-05,x,y,full,1\n");
     return p.text;
 }
@@ -322,7 +338,8 @@ static void test_refused_memory(void **state) {
             thole_network *network = NULL;
             thole_error error = {.text = ""};
             until = n;
-            thole_status status = thole_read_contacts_text(&poor, "log", (char *)p.bytes, p.n, &options, &network, &error);
+            thole_status status =
+                thole_read_contacts_text(&poor, "log", (char *)p.bytes, p.n, &options, &network, &error);
             if (status != THOLE_OK) {
                 assert_true(until < 0);
                 assert_int_equal(status, THOLE_NO_MEMORY);
@@ -351,7 +368,8 @@ static void test_ceiling(void **state) {
     put(&p, "from,to,start,finish\n");
     for (int i = 0; i < 3000; i++)
         put(&p, "a%d,b,%d,9999\n", i, i);
-    assert_int_equal(thole_read_contacts_text(&poor, "log", p.text, p.n, &USUAL, &network, &error), THOLE_LIMIT);
+    assert_int_equal(thole_read_contacts_text(&poor, "log", p.text, p.n, &USUAL, &network, &error),
+                     THOLE_LIMIT);
     assert_non_null(strstr(error.text, "memory ceiling"));
     assert_int_equal(atomic_load(&small.used), 0);
 }
@@ -382,9 +400,11 @@ static void test_progress_and_stop(void **state) {
         n += (size_t)sprintf(text + n, "a,b,1,2\n");
     ticks t = {.stop_at = -1};
     _Atomic bool cancel = false;
-    thole_context ticking = {.memory = &memory, .threads = 1, .tick = count_tick, .tick_user = &t, .cancel = &cancel};
+    thole_context ticking = {
+        .memory = &memory, .threads = 1, .tick = count_tick, .tick_user = &t, .cancel = &cancel};
     thole_network *network = NULL;
-    assert_int_equal(thole_read_contacts_text(&ticking, "folder/log.csv", text, n, &USUAL, &network, NULL), THOLE_OK);
+    assert_int_equal(thole_read_contacts_text(&ticking, "folder/log.csv", text, n, &USUAL, &network, NULL),
+                     THOLE_OK);
     thole_network_release(network);
     assert_string_equal(t.phase, "reading log.csv");
     assert_true(t.n >= 10 && t.last == 1.0);
@@ -393,13 +413,16 @@ static void test_progress_and_stop(void **state) {
         thole_error error;
         t = (ticks){.stop_at = stop};
         network = NULL;
-        assert_int_equal(thole_read_contacts_text(&ticking, "folder/log.csv", text, n, &USUAL, &network, &error), THOLE_CANCELLED);
+        assert_int_equal(
+            thole_read_contacts_text(&ticking, "folder/log.csv", text, n, &USUAL, &network, &error),
+            THOLE_CANCELLED);
         assert_null(network);
         assert_string_equal(error.text, "stopped while reading log.csv");
     }
     cancel = true;
     t = (ticks){.stop_at = -1};
-    assert_int_equal(thole_read_contacts_text(&ticking, "log.csv", text, n, &USUAL, &network, NULL), THOLE_CANCELLED);
+    assert_int_equal(thole_read_contacts_text(&ticking, "log.csv", text, n, &USUAL, &network, NULL),
+                     THOLE_CANCELLED);
     free(text);
 }
 

@@ -1,4 +1,5 @@
-/* The cursor over delimited text: against libcsv on random quoted text, and against itself with other blocks. */
+/* The cursor over delimited text: against libcsv on random quoted text, and against itself with other blocks.
+ */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stdio.h>
@@ -10,6 +11,7 @@
 
 #include "ingest/rows.h"
 #include "ingest/utf8.h"
+#include "ingest/words.h"
 
 static uint64_t seed = UINT64_C(0xD1B54A32D192ED03);
 
@@ -90,7 +92,16 @@ static ti_flaw by_cursor(const char *text, size_t n, char separator, size_t bloc
 
 /* Well-formed text: what every reader of RFC 4180 must agree on. */
 static size_t random_text(char *text, char separator) {
-    static const char *const PIECES[] = {"a", "Quay", "12", "\xC3\xA9", "-", " ", "2031-05-04T06:20:00", "\x01", "+", "longer than eight bytes"};
+    static const char *const PIECES[] = {"a",
+                                         "Quay",
+                                         "12",
+                                         "\xC3\xA9",
+                                         "-",
+                                         " ",
+                                         "2031-05-04T06:20:00",
+                                         "\x01",
+                                         "+",
+                                         "longer than eight bytes"};
     size_t n = 0;
     int rows = 1 + (int)(next_random() % 12), dense = (int)(next_random() % 3);
     for (int row = 0; row < rows; row++) {
@@ -143,8 +154,8 @@ static void test_against_libcsv(void **state) {
         by_libcsv(text, n, separator, &wanted);
         ti_flaw flaw = by_cursor(text, n, separator, BLOCKS[i % 7], &mine);
         if (flaw != TI_SOUND || wanted.n != mine.n || memcmp(wanted.text, mine.text, mine.n) != 0)
-            fail_msg("case %ld, flaw %d of\n%.*s\nlibcsv:\n%.*s\ncursor:\n%.*s", i, (int)flaw, (int)n, text, (int)wanted.n,
-                     wanted.text, (int)mine.n, mine.text);
+            fail_msg("case %ld, flaw %d of\n%.*s\nlibcsv:\n%.*s\ncursor:\n%.*s", i, (int)flaw, (int)n, text,
+                     (int)wanted.n, wanted.text, (int)mine.n, mine.text);
     }
 }
 
@@ -200,9 +211,15 @@ static void test_places(void **state) {
     }
 }
 
-/* Every code point and its neighbours in bits, against the definition of RFC 3629, section 4, decoded the plain way. */
+/* Every code point and its neighbours in bits, against the definition of RFC 3629, section 4, decoded the
+ * plain way. */
 static bool plainly_sound(const unsigned char *p, size_t n) {
-    size_t more = n == 0 ? 9 : p[0] < 0x80 ? 0 : (p[0] & 0xE0) == 0xC0 ? 1 : (p[0] & 0xF0) == 0xE0 ? 2 : (p[0] & 0xF8) == 0xF0 ? 3 : 9;
+    size_t more = n == 0                  ? 9
+                  : p[0] < 0x80           ? 0
+                  : (p[0] & 0xE0) == 0xC0 ? 1
+                  : (p[0] & 0xF0) == 0xE0 ? 2
+                  : (p[0] & 0xF8) == 0xF0 ? 3
+                                          : 9;
     static const uint32_t LEAST[] = {0, 0x80, 0x800, 0x10000};
     if (more > 3 || n != more + 1)
         return false;
@@ -244,6 +261,23 @@ static void test_utf8(void **state) {
     assert_int_equal(ti_utf8_sound("", 0), 0);
 }
 
+/* Against digits put together one by one; whatever stands behind the number. */
+static void test_short_numbers(void **state) {
+    (void)state;
+    for (int i = 0; i < 200000; i++) {
+        char text[16];
+        size_t length = 1 + next_random() % 8;
+        int64_t wanted = 0;
+        for (size_t k = 0; k < sizeof text; k++)
+            text[k] = k < length ? (char)('0' + next_random() % 10) : (char)next_random();
+        if (i % 3 == 0)
+            text[next_random() % length] = (char)next_random();
+        for (size_t k = 0; k < length && wanted >= 0; k++)
+            wanted = text[k] < '0' || text[k] > '9' ? -1 : wanted * 10 + (text[k] - '0');
+        assert_int_equal(ti_short_number(text, length), wanted);
+    }
+}
+
 static int check_memory(void **state) {
     (void)state;
     return atomic_load(&memory.used) == 0 ? 0 : -1;
@@ -255,6 +289,7 @@ int main(void) {
         cmocka_unit_test_teardown(test_blocks, check_memory),
         cmocka_unit_test_teardown(test_places, check_memory),
         cmocka_unit_test(test_utf8),
+        cmocka_unit_test(test_short_numbers),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

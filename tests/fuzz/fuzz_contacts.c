@@ -1,10 +1,11 @@
 /* Any bytes, read as contacts: no crash, no leak, and an answer that adds up.
  *
  * With libFuzzer:
- *     clang -std=c11 -D_POSIX_C_SOURCE=200809L -g -O1 -fsanitize=fuzzer,address,undefined -fno-sanitize-recover=all \
- *         -Icore -o build/fuzz_contacts tests/fuzz/fuzz_contacts.c core/base/?*.c core/clock/?*.c core/network/?*.c \
- *         core/ingest/?*.c -larchive -lz -lpthread -lm
- *     build/fuzz_contacts -max_total_time=60 -max_len=4096 tests/fuzz/corpus_contacts
+ *     clang -std=c11 -D_POSIX_C_SOURCE=200809L -g -O1 -fsanitize=fuzzer,address,undefined
+ * -fno-sanitize-recover=all \
+ *         -Icore -o build/fuzz_contacts tests/fuzz/fuzz_contacts.c core/base/?*.c core/clock/?*.c
+ * core/network/?*.c \ core/ingest/?*.c -larchive -lz -lpthread -lm build/fuzz_contacts -max_total_time=60
+ * -max_len=4096 tests/fuzz/corpus_contacts
  *
  * Without it, tests/fuzz/replay.c runs every file of the corpus through the same function once.
  *
@@ -36,7 +37,16 @@ static void *resize(void *user, void *block, size_t old_bytes, size_t new_bytes)
     return realloc(block, new_bytes);
 }
 
-enum { HEADLESS = 1, SKIP = 2, DURATION = 4, CONTACTS = 8, NUMBERS = 16, LINGER = 32, TAKE = 64, CLOCK_MINUTES = 128 };
+enum {
+    HEADLESS = 1,
+    SKIP = 2,
+    DURATION = 4,
+    CONTACTS = 8,
+    NUMBERS = 16,
+    LINGER = 32,
+    TAKE = 64,
+    CLOCK_MINUTES = 128
+};
 
 static thole_contacts_options choose(const uint8_t *data) {
     static const char SEPARATORS[] = {0, ',', ';', '\t'};
@@ -98,7 +108,8 @@ static void check_network(const thole_network *network, const thole_contacts_opt
 static void check_error(const thole_error *error, thole_status status) {
     size_t length = strlen(error->text);
     CHECK(error->status == status);
-    CHECK(status == THOLE_INPUT || status == THOLE_ARGUMENT || status == THOLE_NO_MEMORY || status == THOLE_LIMIT);
+    CHECK(status == THOLE_INPUT || status == THOLE_ARGUMENT || status == THOLE_NO_MEMORY ||
+          status == THOLE_LIMIT);
     CHECK(length > 0 && error->text[length - 1] != '.' && strchr(error->text, '\n') == NULL);
     CHECK(ti_utf8_sound(error->text, length) == length);
 }
@@ -124,11 +135,13 @@ static void check_blocks(const char *text, size_t size, char separator) {
             status[k] = ti_rows_next(&rows[k], &got[k], &error[k]);
         if (status[0] != THOLE_OK || status[1] != THOLE_OK)
             break;
-        CHECK(got[0] == got[1] && rows[0].n == rows[1].n && rows[0].flaw == rows[1].flaw && rows[0].line == rows[1].line);
+        CHECK(got[0] == got[1] && rows[0].n == rows[1].n && rows[0].flaw == rows[1].flaw &&
+              rows[0].line == rows[1].line);
         for (size_t i = 0; i < rows[0].n && got[0]; i++) {
             const ti_field *a = &rows[0].field[i], *b = &rows[1].field[i];
             uint64_t line[2], column[2];
-            CHECK(a->length == b->length && a->from == b->from && (a->length == 0 || memcmp(a->at, b->at, a->length) == 0));
+            CHECK(a->length == b->length && a->from == b->from &&
+                  (a->length == 0 || memcmp(a->at, b->at, a->length) == 0));
             for (int k = 0; k < 2; k++)
                 ti_rows_place(&rows[k], rows[k].field[i].from, &line[k], &column[k]);
             CHECK(line[0] == line[1] && column[0] == column[1]);
@@ -156,14 +169,15 @@ int LLVMFuzzerTestOneInput(const uint8_t *data, size_t size) {
     thole_contacts_options options = choose(data);
     thole_network *network = NULL;
     thole_error error = {.text = ""};
-    thole_status status = thole_read_contacts_text(&context, "input.csv", (const char *)data + OPTIONS, size - OPTIONS,
-                                                   &options, &network, &error);
+    thole_status status = thole_read_contacts_text(&context, "input.csv", (const char *)data + OPTIONS,
+                                                   size - OPTIONS, &options, &network, &error);
     CHECK((status == THOLE_OK) == (network != NULL));
     if (status == THOLE_OK)
         check_network(network, &options);
     else
         check_error(&error, status);
-    check_blocks((const char *)data + OPTIONS, size - OPTIONS, options.separator != 0 ? options.separator : ',');
+    check_blocks((const char *)data + OPTIONS, size - OPTIONS,
+                 options.separator != 0 ? options.separator : ',');
     thole_network_release(network);
     CHECK(atomic_load(&memory.used) == 0);
     return 0;
