@@ -6,7 +6,7 @@
 
 #include "base/names.h"
 #include "ingest/attributes.h"
-#include "ingest/faults.h"
+#include "ingest/row_faults.h"
 #include "ingest/recent.h"
 #include "ingest/times.h"
 #include "network/expect.h"

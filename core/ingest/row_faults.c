@@ -1,5 +1,5 @@
 /* Faulty rows. */
-#include "ingest/faults.h"
+#include "ingest/row_faults.h"
 
 #include <stdio.h>
 #include <string.h>

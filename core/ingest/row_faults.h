@@ -1,6 +1,6 @@
 /* Inside the core: what is wrong with a row, as a message or as a count. */
-#ifndef TI_FAULTS_H
-#define TI_FAULTS_H
+#ifndef TI_ROW_FAULTS_H
+#define TI_ROW_FAULTS_H
 
 #include "ingest/header.h"
 
