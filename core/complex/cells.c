@@ -7,6 +7,15 @@
 /* Bytes that a cell takes in the block and its reduction, about: for the estimate only. */
 enum { BYTES_A_CELL = 64 };
 
+const char *tc_where(const tc_block *block, char out[TC_WHERE]) {
+    unsigned first = block->first / 2 + 1, last = (block->last + 1) / 2 + 1;
+    if (first == last)
+        snprintf(out, TC_WHERE, "window %u", first);
+    else
+        snprintf(out, TC_WHERE, "windows %u to %u", first, last);
+    return out;
+}
+
 thole_status tc_cells_refused(tc_work *work, const tc_block *block, int d, uint64_t cells) {
     thole_memory *memory = work->context->memory;
     static const char *const names[] = {"nodes", "links", "triangles", "tetrahedra"};
@@ -15,18 +24,17 @@ thole_status tc_cells_refused(tc_work *work, const tc_block *block, int d, uint6
         snprintf(what, sizeof what, "%s", names[d]);
     else
         snprintf(what, sizeof what, "cells of dimension %d", d);
-    unsigned first = block->first / 2 + 1, last = (block->last + 1) / 2 + 1;
+    char where[TC_WHERE];
     if (!atomic_load(&memory->hit_ceiling))
-        return thole_fail(work->error, THOLE_NO_MEMORY, "out of memory for %llu %s of windows %u to %u",
-                          (unsigned long long)cells, what, first, last);
+        return thole_fail(work->error, THOLE_NO_MEMORY, "out of memory for %llu %s of %s", (unsigned long long)cells, what,
+                          tc_where(block, where));
     return thole_fail(work->error, THOLE_LIMIT,
-                      "windows %u to %u have at least %llu %s, more than the memory ceiling of %zu MB holds: lower the "
-                      "radius or the dimensions, shorten the windows, or raise max_memory",
-                      first, last, (unsigned long long)cells, what, memory->ceiling / 1000000);
+                      "about %llu %s or more in %s do not fit under the memory ceiling of %zu MB: lower the radius or the "
+                      "dimensions, shorten the windows, or raise max_memory",
+                      (unsigned long long)cells, what, tc_where(block, where), memory->ceiling / 1000000);
 }
 
-/* Stop before memory is touched when `cells` more cannot fit. */
-static thole_status check_estimate(tc_work *work, const tc_block *block, int d, uint64_t cells) {
+thole_status tc_check_estimate(tc_work *work, const tc_block *block, int d, uint64_t cells) {
     thole_memory *memory = work->context->memory;
     if (memory->ceiling == 0)
         return THOLE_OK;
@@ -173,7 +181,7 @@ thole_status tc_block_make(tc_work *work, const tc_stays *stays, const tc_blocks
     if (inherited > UINT32_MAX / 4)
         return thole_fail(work->error, THOLE_LIMIT, "%llu link stays in one block are more than 2^30: shorten the windows or set block",
                           (unsigned long long)inherited);
-    thole_status status = check_estimate(work, out, 1, inherited);
+    thole_status status = tc_check_estimate(work, out, 1, inherited);
     if (status != THOLE_OK)
         return status;
     tc_links links;

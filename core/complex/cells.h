@@ -28,6 +28,10 @@ typedef struct tc_block {
     tc_cells cells[TC_TOP + 1];
 } tc_block;
 
+/* "window 3" or "windows 3 to 5": where a block is, for messages. */
+#define TC_WHERE 48
+const char *tc_where(const tc_block *block, char out[TC_WHERE]);
+
 /* What a worker brings to the making of cells. */
 typedef struct tc_work {
     thole_context *context;
@@ -67,6 +71,9 @@ thole_status tc_power_links(tc_work *work, tc_links *links, uint32_t radius, uin
 /* Cells of dimension d >= 2 from those of d - 1 (and, for d = 2, the links). */
 thole_status tc_triangles(tc_work *work, tc_block *block);
 thole_status tc_cliques(tc_work *work, tc_block *block, int d);
+
+/* Refuse before memory is touched when about `cells` more cells of dimension d cannot fit under the ceiling. */
+thole_status tc_check_estimate(tc_work *work, const tc_block *block, int d, uint64_t cells);
 
 /* The refusal of memory while cells are made, in the words of a recipe. */
 thole_status tc_cells_refused(tc_work *work, const tc_block *block, int d, uint64_t cells);

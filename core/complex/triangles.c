@@ -49,9 +49,15 @@ typedef struct search {
     TB_VEC(uint32_t) first;
     TB_VEC(uint32_t) last;
     TB_VEC(uint32_t) face; /* three a triangle */
+    bool count_only;       /* a look ahead: nothing is kept */
+    uint64_t counted;
 } search;
 
 static bool emit(search *s, uint32_t lo, uint32_t hi, uint32_t i, uint32_t j, uint32_t k) {
+    if (s->count_only) {
+        s->counted++;
+        return true;
+    }
     thole_memory *memory = s->work->context->memory;
     size_t n = s->first.n;
     if (!TB_VEC_RESERVE(memory, &s->first, n + 1) || !TB_VEC_RESERVE(memory, &s->last, n + 1) ||
@@ -106,28 +112,60 @@ static uint32_t find_pair(const pairs *g, uint32_t from, uint32_t to, uint32_t h
     return from < end && g->high[from] == high ? from : TC_NONE;
 }
 
-/* All triangles whose lowest node is slot u; mark[] maps the higher slots of u to their pairs + 1. */
-static bool triangles_at(search *s, uint32_t u, uint32_t *mark) {
+/* The triangles over pair p of slot u; mark[] maps the higher slots of u to their pairs + 1. */
+static bool triangles_over(search *s, uint32_t p, uint32_t to, const uint32_t *mark) {
     const pairs *g = &s->pairs;
-    uint32_t from = g->begin[u], to = g->begin[u + 1];
-    for (uint32_t p = from; p < to; p++)
-        mark[g->high[p]] = p + 1;
+    uint32_t v = g->high[p], vfrom = g->begin[v], vto = g->begin[v + 1];
     bool fine = true;
-    for (uint32_t p = from; fine && p < to; p++) {
-        uint32_t v = g->high[p], vfrom = g->begin[v], vto = g->begin[v + 1];
-        if (vto - vfrom <= to - p) {
-            for (uint32_t r = vfrom; fine && r < vto; r++)
-                fine = mark[g->high[r]] == 0 || meet(s, p, mark[g->high[r]] - 1, r);
-        } else {
-            for (uint32_t q = p + 1; fine && q < to; q++) {
-                uint32_t r = find_pair(g, vfrom, vto, g->high[q]);
-                fine = r == TC_NONE || meet(s, p, q, r);
-            }
+    if (vto - vfrom <= to - p) {
+        for (uint32_t r = vfrom; fine && r < vto; r++)
+            fine = mark[g->high[r]] == 0 || meet(s, p, mark[g->high[r]] - 1, r);
+    } else {
+        for (uint32_t q = p + 1; fine && q < to; q++) {
+            uint32_t r = find_pair(g, vfrom, vto, g->high[q]);
+            fine = r == TC_NONE || meet(s, p, q, r);
         }
     }
-    for (uint32_t p = from; p < to; p++)
-        mark[g->high[p]] = 0;
     return fine;
+}
+
+static void set_marks(const pairs *g, uint32_t u, uint32_t *mark, bool on) {
+    for (uint32_t p = g->begin[u]; p < g->begin[u + 1]; p++)
+        mark[g->high[p]] = on ? p + 1 : 0;
+}
+
+/* All triangles whose lowest node is slot u. */
+static bool triangles_at(search *s, uint32_t u, uint32_t *mark) {
+    const pairs *g = &s->pairs;
+    uint32_t to = g->begin[u + 1];
+    bool fine = true;
+    set_marks(g, u, mark, true);
+    for (uint32_t p = g->begin[u]; fine && p < to; p++)
+        fine = triangles_over(s, p, to, mark);
+    set_marks(g, u, mark, false);
+    return fine;
+}
+
+enum { LOOKS = 2048 };
+
+/* About how many triangles there are, from pairs at even distances: so that a hopeless request is refused before
+ * it has filled the memory. */
+static uint64_t look_ahead(search *s, uint32_t *mark) {
+    const pairs *g = &s->pairs;
+    if (g->n < 4 * LOOKS)
+        return 0; /* few enough to go and see */
+    s->count_only = true;
+    s->counted = 0;
+    uint32_t u = 0, looked = 0, step = g->n / LOOKS;
+    for (uint32_t p = step / 2; p < g->n; p += step, looked++) {
+        while (g->begin[u + 1] <= p)
+            u++;
+        set_marks(g, u, mark, true);
+        (void)triangles_over(s, p, g->begin[u + 1], mark); /* counting needs no memory */
+        set_marks(g, u, mark, false);
+    }
+    s->count_only = false;
+    return s->counted / looked * g->n;
 }
 
 /* The vectors become the cells' arrays; nodes are only needed where cliques are made of triangles. */
@@ -151,8 +189,8 @@ thole_status tc_triangles(tc_work *work, tc_block *block) {
     uint32_t *mark = NULL;
     bool fine = list_pairs(work, &block->cells[0], s.links, &s.pairs);
     fine = fine && (mark = TB_FILL(work->arena, uint32_t, s.pairs.slots, 0)) != NULL;
-    thole_status status = THOLE_OK;
-    for (uint32_t u = 0; fine && u < s.pairs.slots; u++) {
+    thole_status status = fine ? tc_check_estimate(work, block, 2, look_ahead(&s, mark)) : THOLE_OK;
+    for (uint32_t u = 0; fine && status == THOLE_OK && u < s.pairs.slots; u++) {
         if ((u & 63) == 0 && tb_cancelled(work->context)) {
             status = thole_fail(work->error, THOLE_CANCELLED, "stopped while finding triangles");
             break;

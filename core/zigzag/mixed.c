@@ -156,9 +156,9 @@ static bool mix_one(mixer *m, uint32_t t, bool at_edge, thole_status *status) {
     if (!reduce(m, at_edge))
         return false;
     if (m->r.n == 0) {
-        *status = thole_fail(m->work->error, THOLE_ARGUMENT,
-                             "a cycle was lost in windows %u to %u: please report this as a fault of Thole",
-                             m->out->first / 2 + 1, (m->out->last + 1) / 2 + 1);
+        char where[TC_WHERE];
+        *status = thole_fail(m->work->error, THOLE_ARGUMENT, "a cycle was lost in %s: please report this as a fault of Thole",
+                             tc_where(m->addition->block, where));
         return true;
     }
     DRAIN(m, &m->sums, &m->c);

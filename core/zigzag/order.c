@@ -2,13 +2,13 @@
 
 thole_status tz_refused(tz_work *work, const tc_block *block) {
     thole_memory *memory = work->context->memory;
-    unsigned first = block->first / 2 + 1, last = (block->last + 1) / 2 + 1;
+    char where[TC_WHERE];
     if (!atomic_load(&memory->hit_ceiling))
-        return thole_fail(work->error, THOLE_NO_MEMORY, "out of memory for the zigzag of windows %u to %u", first, last);
+        return thole_fail(work->error, THOLE_NO_MEMORY, "out of memory for the zigzag of %s", tc_where(block, where));
     return thole_fail(work->error, THOLE_LIMIT,
-                      "the zigzag of windows %u to %u needs more than the memory ceiling of %zu MB: lower the radius or "
-                      "the dimensions, shorten the windows, or raise max_memory",
-                      first, last, memory->ceiling / 1000000);
+                      "the zigzag of %s does not fit under the memory ceiling of %zu MB: lower the radius or the "
+                      "dimensions, shorten the windows, or raise max_memory",
+                      tc_where(block, where), memory->ceiling / 1000000);
 }
 
 static bool rank_cells(tz_work *work, const tc_cells *cells, tz_way way, uint32_t length, tz_rank *out) {
