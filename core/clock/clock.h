@@ -63,7 +63,8 @@ typedef enum thole_parse {
 THOLE_API thole_parse thole_parse_decimal(const char *text, size_t length, int64_t *ticks);
 
 /* ISO 8601 calendar time: YYYY-MM-DD, then optionally "T" or a space and HH:MM[:SS[.fraction]],
- * then optionally Z, +HH, +HHMM or +HH:MM; basic forms (YYYYMMDDTHHMMSS) too.
+ * then, after a time, optionally Z, +HH, +HHMM, +HH:MM or (local mean times of the past) +HH:MM:SS; basic forms
+ * (YYYYMMDDTHHMMSS) too.
  * Without an offset the time is local in `zone` (NULL: UTC); *local (may be NULL) tells whether
  * that time occurs once. 24:00:00 is the next day's 00:00; second 60 is taken as
  * the next minute's 00. */
