@@ -138,7 +138,8 @@ thole_status thole_windows_sliding(thole_context *context, int64_t start, int64_
     uint64_t n = (reach < last_start ? reach : last_start) + 1;
     if (n > MOST_WINDOWS)
         return thole_fail(error, THOLE_LIMIT, "%llu windows are more than 1,000,000,000: use longer ones, or a longer step", (unsigned long long)n);
-    if (start > INT64_MAX - length || (int64_t)((n - 1) * (uint64_t)step) > INT64_MAX - length - (start > 0 ? start : 0))
+    uint64_t offset = (n - 1) * (uint64_t)step; /* of the last start; below the span */
+    if (start > INT64_MAX - length || offset > (uint64_t)(INT64_MAX - length) - (uint64_t)start)
         return thole_fail(error, THOLE_LIMIT, "the last window ends after the latest time that can be told: shorten the windows");
     thole_windows *w = make(context->memory, (size_t)n);
     if (w == NULL)
