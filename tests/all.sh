@@ -1,27 +1,34 @@
 #!/bin/sh
-# Run all groups of tests, or those named (core,lua,cli,writers,browser,install,lint), on what is built in BUILD.
+# Run all groups of tests, or those named (core,lua,cli,writers,docs,browser,install,lint), on what is built in BUILD.
 #
 #     tests/all.sh BUILD [GROUP[,GROUP…]]
 #
 # Each line is one program or script; a failing one does not hide the others. Closes with "N passed, N failed".
 set -u
 build=${1:?build folder}
-groups=${2:-core,lua,cli,writers,browser,install}
+groups=${2:-core,lua,cli,writers,docs,browser,install}
 lua=${LUA:-lua5.4}
 logs=$build/test-logs
 mkdir -p "$logs"
 passed=0
 failed=0
 
-# try NAME COMMAND...: run it, keep what it says, show the end of it when it fails.
+# What a program says that it counted, for the line that is shown: "12 tests", "345 checks".
+counted() {
+    sed -nE 's/^\[  PASSED  \] ([0-9]+) test\(s\)\.$/\1 tests, /p; s/^([0-9]+ (checks|passed|stories|tests)), 0 failed$/\1, /p' "$1" |
+        tail -n 1
+}
+
+# try NAME COMMAND...: run it, keep what it says, show the end of it when it fails. A test that was skipped
+# is no test that passed.
 try() {
     name=$1
     shift
     log=$logs/$(printf '%s' "$name" | tr ' /' '__').log
     began=$(date +%s)
-    if "$@" >"$log" 2>&1 </dev/null; then
+    if "$@" >"$log" 2>&1 </dev/null && ! grep -q '^\[  SKIPPED ' "$log"; then
         passed=$((passed + 1))
-        echo "ok      $name ($(($(date +%s) - began)) s)"
+        echo "ok      $name ($(counted "$log")$(($(date +%s) - began)) s)"
     else
         failed=$((failed + 1))
         echo "FAILED  $name: the end of $log:"
@@ -39,10 +46,12 @@ core() {
         some "$source" && try "${source%.c}" "$build/${source%.c}"
     done
     try "tests/fuzz corpus" "$build/tests/fuzz/replay" tests/fuzz/corpus_contacts
+    # The sanitizers bring functions of their own.
+    [ -n "${SANITIZED:-}" ] || try "library's symbols" sh tests/lint/library.sh "$build"
 }
 
 lua_group() {
-    try "module's needs and exports" sh tests/lint/module.sh "$build"
+    [ -n "${SANITIZED:-}" ] || try "module's needs and exports" sh tests/lint/module.sh "$build"
     if [ -n "${SANITIZED:-}" ]; then # the stock interpreter was built without the sanitizers' run time
         try "Lua interface in $lua" env LD_PRELOAD="$(cc -print-file-name=libasan.so)" ASAN_OPTIONS=detect_leaks=0 \
             LUA_CPATH="$(cd "$build" && pwd)/?.so" "$lua" tests/lua/run.lua
@@ -68,14 +77,17 @@ writers() {
 
 browser() { try "reports and pictures in a browser" sh tests/browser/run.sh "$build"; }
 
-install_group() { try "installed library, module and command" sh tests/lint/install.sh "$build"; }
+docs() { try "examples and links of the documents" "$lua" tests/docs/examples.lua "$build"; }
+
+install_group() {
+    try "setting up a machine" sh tests/lint/setup.sh
+    try "installed library, module and command" sh tests/lint/install.sh "$build"
+}
 
 lint() {
     for script in tests/lint/*.lua; do
         some "$script" && try "$script" "$lua" "$script"
     done
-    try "module's needs and exports" sh tests/lint/module.sh "$build"
-    try "library's symbols" sh tests/lint/library.sh "$build"
     try "luacheck" luacheck -q lua recipes tests core/bind/embed.lua
     try "cppcheck" sh tests/lint/cppcheck.sh
     try "second compiler" sh tests/lint/second_compiler.sh
@@ -83,7 +95,7 @@ lint() {
 
 for group in $(echo "$groups" | tr ',' ' '); do
     case $group in
-    core | cli | writers | browser | lint) "$group" ;;
+    core | cli | writers | docs | browser | lint) "$group" ;;
     lua | install) "${group}_group" ;;
     *) echo "unknown group $group" >&2; exit 2 ;;
     esac
