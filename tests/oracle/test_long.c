@@ -118,8 +118,6 @@ static void runs_of_long_networks_agree_with_the_judge(void **state) {
         judge_case like;
         random_chain(&d, &here, &like);
         thole_zigzag_options options = run_case_options(&like, blocks[dice_below(&d, 6)]);
-        printf("network %llu: %zu windows, block %u\n", (unsigned long long)i, here.windows,
-               (unsigned)options.block);
         char which[100];
         snprintf(which, sizeof which, "network %llu of seed %llu, block %u", (unsigned long long)i,
                  (unsigned long long)seed, (unsigned)options.block);
