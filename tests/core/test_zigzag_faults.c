@@ -1,9 +1,11 @@
 /* The zigzag when memory fails, when the ceiling is low, and when it is told to stop. */
+#include <limits.h>
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
 #include <stdint.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 
 #include <cmocka.h>
@@ -21,12 +23,27 @@ static judge_case small_case(unsigned dims, int radius) {
     }
     for (c.events = 0; c.events < 60; c.events++) {
         int start = dice_from(&d, 0, 30);
-        c.event[c.events] = (judge_event){(int)dice_below(&d, 7), (int)dice_below(&d, 7), start, start + dice_from(&d, 0, 9)};
+        c.event[c.events] =
+            (judge_event){(int)dice_below(&d, 7), (int)dice_below(&d, 7), start, start + dice_from(&d, 0, 9)};
     }
     return c;
 }
 
-/* Every allocation of a run fails once, or from then on: a clean refusal each time, nothing kept, and the next run is right. */
+/* Whether the barcode is the judge's. */
+static bool is_right(const thole_barcode *barcode, const judge_bar *want, size_t n) {
+    static judge_bar got[JUDGE_BARS];
+    size_t m = thole_barcode_count(barcode);
+    for (size_t i = 0; i < m && i < JUDGE_BARS; i++) {
+        thole_bar bar = thole_barcode_bar(barcode, i);
+        got[i] = (judge_bar){bar.dim, (int)bar.first, (int)bar.last,
+                             bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN,
+                             bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN};
+    }
+    return run_case_same(want, n, got, m);
+}
+
+/* Every allocation of a run fails once, or from then on: a clean refusal each time, nothing kept, and the
+ * next run, in the same memory, is right. */
 static void every_allocation_fails(const judge_case *c, bool for_good, uint32_t block) {
     faults f = {.left = -1};
     thole_memory memory = faults_memory(&f);
@@ -53,7 +70,7 @@ static void every_allocation_fails(const judge_case *c, bool for_good, uint32_t 
         f.left = -1;
         assert_false(f.overwritten);
         if (status == THOLE_OK) {
-            assert_int_equal(thole_barcode_count(barcode), n);
+            assert_true(is_right(barcode, want, n));
             if (untouched)
                 break;
             recovered++; /* a smaller growth, or going without, did as well */
@@ -72,10 +89,14 @@ static void every_allocation_fails(const judge_case *c, bool for_good, uint32_t 
         barcode = NULL;
         assert_int_equal(atomic_load(&memory.used), before);
         assert_int_equal(f.blocks, blocks);
+        assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_OK);
+        assert_true(is_right(barcode, want, n));
+        thole_barcode_release(barcode);
+        barcode = NULL;
+        assert_int_equal(atomic_load(&memory.used), before);
     }
     printf("%ld failures of an allocation were told, %ld made good\n", failures, recovered);
     assert_true(failures > 10 && failures + recovered > 100);
-    assert_int_equal(thole_barcode_count(barcode), n);
     thole_carriers_release(carriers);
     thole_barcode_release(barcode);
     thole_network_release(network);
@@ -94,8 +115,66 @@ static void memory_fails_once(void **state) {
 
 static void memory_fails_for_good(void **state) {
     (void)state;
-    judge_case a = small_case(7, 1);
+    judge_case a = small_case(7, 1), b = small_case(3, 2), c = small_case(3, -1);
+    b.intersection = c.all_nodes = true;
     every_allocation_fails(&a, true, 3);
+    every_allocation_fails(&b, true, 0);
+    every_allocation_fails(&c, true, 1);
+}
+
+/* An allocator for several threads at once that refuses from some call on. */
+typedef struct shared_faults {
+    _Atomic long left; /* calls that still succeed */
+} shared_faults;
+
+static void *shared_resize(void *user, void *block, size_t old_bytes, size_t new_bytes) {
+    shared_faults *f = user;
+    if (new_bytes == 0) {
+        free(block);
+        return NULL;
+    }
+    if (new_bytes > old_bytes && atomic_fetch_sub(&f->left, 1) <= 0)
+        return NULL;
+    return realloc(block, new_bytes);
+}
+
+/* The same while several threads ask for memory, in whatever order. */
+static void memory_fails_in_any_thread(void **state) {
+    (void)state;
+    judge_case c = small_case(7, 1);
+    static judge_bar want[JUDGE_BARS];
+    size_t n = judge_barcode(&c, want);
+    shared_faults f = {.left = LONG_MAX};
+    thole_memory memory = {.resize = shared_resize, .user = &f};
+    thole_context context = {.memory = &memory, .threads = 3};
+    thole_network *network;
+    thole_windows *windows;
+    long failures = 0;
+    run_case_make(&context, &c, &network, &windows);
+    thole_zigzag_options options = run_case_options(&c, 1);
+    size_t before = atomic_load(&memory.used);
+    bool done = false;
+    for (long k = 0; !done && k < 100000; k += 1 + k / 50) {
+        thole_barcode *barcode = NULL;
+        thole_error error = {.text = ""};
+        atomic_store(&f.left, k);
+        thole_status status = thole_zigzag(&context, network, windows, &options, &barcode, &error);
+        done = atomic_load(&f.left) >= 0 && status == THOLE_OK;
+        atomic_store(&f.left, LONG_MAX);
+        if (status == THOLE_OK) {
+            assert_true(is_right(barcode, want, n));
+        } else {
+            assert_int_equal(status, THOLE_NO_MEMORY);
+            assert_null(barcode);
+            failures++;
+        }
+        thole_barcode_release(barcode);
+        assert_int_equal(atomic_load(&memory.used), before);
+    }
+    assert_true(done && failures > 20);
+    thole_network_release(network);
+    thole_windows_release(windows);
+    assert_int_equal(atomic_load(&memory.used), 0);
 }
 
 /* A complete graph of `nodes` in a few windows. */
@@ -112,7 +191,8 @@ static thole_network *complete(thole_context *context, uint32_t nodes) {
         assert_int_equal(thole_builder_node(builder, name, (size_t)n, &node, &error), THOLE_OK);
         bool kept;
         for (uint32_t k = 0; k < i; k++)
-            assert_int_equal(thole_builder_event(builder, (thole_event){k, i, 0, 10}, &kept, &error), THOLE_OK);
+            assert_int_equal(thole_builder_event(builder, (thole_event){k, i, 0, 10}, &kept, &error),
+                             THOLE_OK);
     }
     assert_int_equal(thole_builder_finish(builder, &network, &error), THOLE_OK);
     return network;
@@ -133,7 +213,8 @@ static void a_low_ceiling_is_told(void **state) {
         thole_zigzag_options options = {.radius_kind = THOLE_RADIUS_HOPS, .radius = 1, .dims = 7};
         assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_LIMIT);
         assert_null(barcode);
-        assert_non_null(strstr(error.text, "lower the radius or the dimensions, shorten the windows, or raise max_memory"));
+        assert_non_null(strstr(
+            error.text, "lower the radius or the dimensions, shorten the windows, or raise max_memory"));
         assert_int_equal(atomic_load(&memory.used), before);
         assert_true(atomic_load(&memory.peak) <= memory.ceiling);
         options.dims = 1; /* links alone fit: the same memory serves a smaller wish */
@@ -185,20 +266,51 @@ static void it_stops_when_told(void **state) {
             break;
     }
     assert_true(told > 0 && told < 1000);
-    /* the flag alone stops it too */
-    _Atomic bool stop = true;
-    thole_memory memory = {0};
-    thole_context context = {.memory = &memory, .threads = 2};
-    thole_error error;
-    thole_network *network;
-    thole_windows *windows;
-    thole_barcode *barcode = NULL;
-    run_case_make(&context, &c, &network, &windows);
-    context.cancel = &stop;
-    thole_zigzag_options options = run_case_options(&c, 0);
-    assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_CANCELLED);
-    thole_network_release(network);
-    thole_windows_release(windows);
+}
+
+/* Progress that sets the flag, as another thread might, instead of asking to stop itself. */
+static bool set_the_flag(void *user, const char *phase, double done) {
+    _Atomic bool *stop = user;
+    (void)phase;
+    (void)done;
+    atomic_store(stop, true);
+    return false;
+}
+
+static void the_flag_alone_stops_it(void **state) {
+    (void)state;
+    judge_case c = small_case(3, 1);
+    for (int from_the_start = 0; from_the_start < 2; from_the_start++) {
+        _Atomic bool stop = from_the_start == 1;
+        thole_memory memory = {0};
+        thole_context context = {.memory = &memory, .threads = 2};
+        thole_error error;
+        thole_network *network;
+        thole_windows *windows;
+        thole_barcode *barcode = NULL;
+        run_case_make(&context, &c, &network, &windows);
+        size_t before = atomic_load(&memory.used);
+        context.cancel = &stop;
+        if (from_the_start == 0) {
+            context.tick = set_the_flag;
+            context.tick_user = &stop;
+        }
+        thole_zigzag_options options = run_case_options(&c, 1);
+        assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error),
+                         THOLE_CANCELLED);
+        assert_null(barcode);
+        assert_int_equal(atomic_load(&memory.used), before);
+        atomic_store(&stop, false);
+        context.tick = NULL; /* and the next run is right */
+        static judge_bar want[JUDGE_BARS];
+        size_t n = judge_barcode(&c, want);
+        assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_OK);
+        assert_true(is_right(barcode, want, n));
+        thole_barcode_release(barcode);
+        thole_network_release(network);
+        thole_windows_release(windows);
+        assert_int_equal(atomic_load(&memory.used), 0);
+    }
 }
 
 static void bad_options_are_refused(void **state) {
@@ -217,7 +329,8 @@ static void bad_options_are_refused(void **state) {
     assert_int_equal(thole_zigzag(&context, network, windows, &high, &barcode, &error), THOLE_ARGUMENT);
     assert_int_equal(thole_zigzag(&context, network, windows, &odd, &barcode, &error), THOLE_ARGUMENT);
     /* Dimensions that the complex cannot have are no error, but empty. */
-    thole_zigzag_options two_of_graph = {.radius_kind = THOLE_RADIUS_GRAPH, .dims = 4}, one_of_points = {.radius_kind = THOLE_RADIUS_HOPS, .dims = 2};
+    thole_zigzag_options two_of_graph = {.radius_kind = THOLE_RADIUS_GRAPH, .dims = 4},
+                         one_of_points = {.radius_kind = THOLE_RADIUS_HOPS, .dims = 2};
     assert_int_equal(thole_zigzag(&context, network, windows, &two_of_graph, &barcode, &error), THOLE_OK);
     assert_int_equal(thole_barcode_count(barcode), 0);
     thole_barcode_release(barcode);
@@ -233,8 +346,10 @@ static void bad_options_are_refused(void **state) {
 }
 
 int main(void) {
-    const struct CMUnitTest tests[] = {cmocka_unit_test(memory_fails_once), cmocka_unit_test(memory_fails_for_good),
-                                       cmocka_unit_test(a_low_ceiling_is_told), cmocka_unit_test(it_stops_when_told),
-                                       cmocka_unit_test(bad_options_are_refused)};
+    const struct CMUnitTest tests[] = {
+        cmocka_unit_test(memory_fails_once),          cmocka_unit_test(memory_fails_for_good),
+        cmocka_unit_test(memory_fails_in_any_thread), cmocka_unit_test(a_low_ceiling_is_told),
+        cmocka_unit_test(it_stops_when_told),         cmocka_unit_test(the_flag_alone_stops_it),
+        cmocka_unit_test(bad_options_are_refused)};
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
