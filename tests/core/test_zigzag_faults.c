@@ -33,12 +33,8 @@ static judge_case small_case(unsigned dims, int radius) {
 static bool is_right(const thole_barcode *barcode, const judge_bar *want, size_t n) {
     static judge_bar got[JUDGE_BARS];
     size_t m = thole_barcode_count(barcode);
-    for (size_t i = 0; i < m && i < JUDGE_BARS; i++) {
-        thole_bar bar = thole_barcode_bar(barcode, i);
-        got[i] = (judge_bar){bar.dim, (int)bar.first, (int)bar.last,
-                             bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN,
-                             bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN};
-    }
+    for (size_t i = 0; i < m && i < JUDGE_BARS; i++)
+        got[i] = run_case_bar(thole_barcode_bar(barcode, i));
     return run_case_same(want, n, got, m);
 }
 

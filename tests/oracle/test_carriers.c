@@ -1,5 +1,6 @@
-/* Carriers of bars on random networks: at every position they are cycles of the complex there, a basis of its homology
- * together, a boundary where an addition is about to kill the bar, and one where a deletion has just borne it. */
+/* Carriers of bars on random networks: at every position they are cycles of the complex there, a basis of its
+ * homology together, a boundary where an addition is about to kill the bar, and one where a deletion has just
+ * borne it. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -24,8 +25,9 @@ static void random_case(dice *d, judge_case *c) {
     c->events = dice_from(d, 4, 60);
     for (int i = 0; i < c->events; i++) {
         int start = dice_from(d, 0, 36);
-        c->event[i] = (judge_event){(int)dice_below(d, (uint32_t)c->nodes), (int)dice_below(d, (uint32_t)c->nodes), start,
-                                    start + dice_from(d, 0, 9)};
+        c->event[i] =
+            (judge_event){(int)dice_below(d, (uint32_t)c->nodes), (int)dice_below(d, (uint32_t)c->nodes),
+                          start, start + dice_from(d, 0, 9)};
     }
     c->radius = radii[dice_below(d, 4)];
     c->intersection = dice_below(d, 2) == 1;
@@ -82,7 +84,8 @@ static uint64_t check_position(thole_context *context, const judge_case *c, cons
     thole_error error;
     thole_carriers *carriers;
     int positions = 2 * c->windows - 1;
-    assert_int_equal(thole_barcode_carriers(context, barcode, network, (size_t)t, dim, &carriers, &error), THOLE_OK);
+    assert_int_equal(thole_barcode_carriers(context, barcode, network, (size_t)t, dim, &carriers, &error),
+                     THOLE_OK);
     size_t n = thole_carriers_count(carriers);
     assert_int_equal(n, judge_betti(c, t, (int)dim));
     for (size_t i = 0; i < n; i++) {
@@ -134,12 +137,19 @@ static void carriers_carry(void **state) {
     assert_true(carriers > 5 * cases);
 }
 
-/* A pentagon with a tail: its loop is the five nodes in order, whatever hangs on it; and with a chord that fills a triangle at
- * radius 1, the loop takes the chord and leaves the corner out. */
+/* A pentagon with a tail: its loop is the five nodes in order, whatever hangs on it; and with a chord that
+ * fills a triangle at radius 1, the loop takes the chord and leaves the corner out. */
 static void a_loop_is_told_in_order(void **state) {
     (void)state;
-    judge_case c = {.nodes = 7, .events = 6, .windows = 1, .from = {0}, .to = {1}, .radius = 1, .dims = 2,
-                    .event = {{0, 1, 0, 1}, {1, 2, 0, 1}, {2, 3, 0, 1}, {3, 4, 0, 1}, {4, 0, 0, 1}, {2, 6, 0, 1}}};
+    judge_case c = {
+        .nodes = 7,
+        .events = 6,
+        .windows = 1,
+        .from = {0},
+        .to = {1},
+        .radius = 1,
+        .dims = 2,
+        .event = {{0, 1, 0, 1}, {1, 2, 0, 1}, {2, 3, 0, 1}, {3, 4, 0, 1}, {4, 0, 0, 1}, {2, 6, 0, 1}}};
     for (int chord = 0; chord < 2; chord++) {
         if (chord == 1)
             c.event[c.events++] = (judge_event){1, 3, 0, 1};
@@ -153,7 +163,8 @@ static void a_loop_is_told_in_order(void **state) {
         run_case_make(&context, &c, &network, &windows);
         thole_zigzag_options options = run_case_options(&c, 0);
         assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_OK);
-        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 0, 1, &carriers, &error), THOLE_OK);
+        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 0, 1, &carriers, &error),
+                         THOLE_OK);
         assert_int_equal(thole_carriers_count(carriers), 1);
         assert_int_equal(thole_carriers_parts(carriers, 0), 1);
         size_t n;
@@ -164,8 +175,10 @@ static void a_loop_is_told_in_order(void **state) {
         assert_int_equal(n, chord == 0 ? 5 : 4);
         assert_true(seen[0] && seen[1] && seen[3] && seen[4] && seen[2] == (chord == 0) && !seen[6]);
         thole_carriers_release(carriers);
-        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 1, 1, &carriers, &error), THOLE_ARGUMENT);
-        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 0, 0, &carriers, &error), THOLE_ARGUMENT);
+        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 1, 1, &carriers, &error),
+                         THOLE_ARGUMENT);
+        assert_int_equal(thole_barcode_carriers(&context, barcode, network, 0, 0, &carriers, &error),
+                         THOLE_ARGUMENT);
         thole_barcode_release(barcode);
         thole_network_release(network);
         thole_windows_release(windows);
@@ -174,6 +187,7 @@ static void a_loop_is_told_in_order(void **state) {
 }
 
 int main(void) {
-    const struct CMUnitTest tests[] = {cmocka_unit_test(a_loop_is_told_in_order), cmocka_unit_test(carriers_carry)};
+    const struct CMUnitTest tests[] = {cmocka_unit_test(a_loop_is_told_in_order),
+                                       cmocka_unit_test(carriers_carry)};
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -69,36 +69,17 @@ static bool cut(const plan *p, size_t low, size_t windows, const judge_case *lik
     return true;
 }
 
-static size_t cut_bars(bars all, uint32_t low, uint32_t high, judge_bar *out) {
-    size_t n = 0;
-    for (size_t i = 0; i < all.n; i++) {
-        thole_bar bar = all.at[i];
-        if (bar.last < low || bar.first > high)
-            continue;
-        uint32_t first = bar.first < low ? low : bar.first, last = bar.last > high ? high : bar.last;
-        out[n++] = (judge_bar){bar.dim, (int)(first - low), (int)(last - low),
-                               bar.first > low && bar_open_start(bar), bar.last < high && bar_open_end(bar)};
-    }
-    return n;
-}
-
-static int by_place(const void *x, const void *y) {
-    const judge_bar *a = x, *b = y;
-    if (a->dim != b->dim)
-        return a->dim < b->dim ? -1 : 1;
-    if (a->first != b->first)
-        return a->first < b->first ? -1 : 1;
-    return (a->last > b->last) - (a->last < b->last);
-}
-
 static uint64_t check_run(bars all, size_t low, size_t windows, const judge_case *like, const char *which) {
     static judge_bar want[JUDGE_BARS], got[JUDGE_BARS];
     judge_case c;
     if (!cut(&here, low, windows, like, &c))
         return 0;
     size_t n = judge_barcode(&c, want);
-    size_t m = cut_bars(all, (uint32_t)(2 * low), (uint32_t)(2 * (low + windows - 1)), got);
-    qsort(got, m, sizeof *got, by_place); /* what is cut at its start has changed places */
+    bars seen_of_all = bars_cut(all, (uint32_t)(2 * low), (uint32_t)(2 * (low + windows - 1)));
+    size_t m = seen_of_all.n;
+    for (size_t i = 0; i < m && i < JUDGE_BARS; i++)
+        got[i] = run_case_bar(seen_of_all.at[i]);
+    bars_free(&seen_of_all);
     if (!run_case_same(want, n, got, m)) {
         run_case_print_bars("the judge", want, n);
         run_case_print_bars("the core ", got, m);

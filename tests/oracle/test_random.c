@@ -128,12 +128,8 @@ static void ask_core(const judge_case *c, const judge_case *judged, trial how, a
         out->wrong = text;
     } else {
         out->n = thole_barcode_count(barcode);
-        for (size_t i = 0; i < out->n && i < JUDGE_BARS; i++) {
-            thole_bar bar = thole_barcode_bar(barcode, i);
-            out->bars[i] = (judge_bar){bar.dim, (int)bar.first, (int)bar.last,
-                                       bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN,
-                                       bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN};
-        }
+        for (size_t i = 0; i < out->n && i < JUDGE_BARS; i++)
+            out->bars[i] = run_case_bar(thole_barcode_bar(barcode, i));
         out->wrong = check_numbers(&context, judged, barcode);
     }
     thole_barcode_release(barcode);

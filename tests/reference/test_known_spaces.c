@@ -16,14 +16,16 @@
 
 /* An n-cycle in three windows; in a fourth the link between its first two nodes is gone. */
 static judge_case broken_cycle(int n, int radius, unsigned dims) {
-    judge_case c = {.nodes = n, .windows = 4, .from = {0, 1, 2, 3}, .to = {1, 2, 3, 4}, .radius = radius, .dims = dims};
+    judge_case c = {
+        .nodes = n, .windows = 4, .from = {0, 1, 2, 3}, .to = {1, 2, 3, 4}, .radius = radius, .dims = dims};
     for (int i = 0; i < n; i++)
         c.event[c.events++] = (judge_event){i, (i + 1) % n, 0, i == 0 ? 3 : 4};
     return c;
 }
 
-/* Bars of dimension p alive while the cycle is whole: spheres of that dimension, `many` of them. When the cycle breaks its
- * power becomes that of a path, which is contractible (a tree's Rips complexes are), so they end there. */
+/* Bars of dimension p alive while the cycle is whole: spheres of that dimension, `many` of them. When the
+ * cycle breaks its power becomes that of a path, which is contractible (a tree's Rips complexes are), so they
+ * end there. */
 static void expect_spheres(int n, int radius, int p, size_t many) {
     judge_case c = broken_cycle(n, radius, 15);
     judge_bar bars[JUDGE_BARS];
@@ -48,12 +50,14 @@ static void expect_spheres(int n, int radius, int p, size_t many) {
     assert_int_equal(m, many + 1);
 }
 
-/* Adamaszek, "Clique complexes and graph powers", Israel Journal of Mathematics 196 (2013): the complex of the n-cycle at hop
- * radius r is a circle for 0 < r/n < 1/3, a wedge of n - 2r - 1 two-spheres at 1/3, a three-sphere for 1/3 < r/n < 2/5, and
- * contractible where every two nodes are near. */
+/* Adamaszek, "Clique complexes and graph powers", Israel Journal of Mathematics 196 (2013): the complex of
+ * the n-cycle at hop radius r is a circle for 0 < r/n < 1/3, a wedge of n - 2r - 1 two-spheres at 1/3, a
+ * three-sphere for 1/3 < r/n < 2/5, and contractible where every two nodes are near. */
 static void powers_of_cycles(void **state) {
     (void)state;
-    static const struct { int n, r; } circles[] = {{4, 1}, {5, 1}, {7, 1}, {7, 2}, {8, 2}, {10, 3}, {11, 3}, {12, 3}};
+    static const struct {
+        int n, r;
+    } circles[] = {{4, 1}, {5, 1}, {7, 1}, {7, 2}, {8, 2}, {10, 3}, {11, 3}, {12, 3}};
     for (size_t i = 0; i < sizeof circles / sizeof *circles; i++)
         expect_spheres(circles[i].n, circles[i].r, 1, 1);
     expect_spheres(6, 2, 2, 1);
@@ -69,8 +73,12 @@ static void powers_of_cycles(void **state) {
 
 enum { GROWING = 300, MOST_CELLS = 4096 };
 
-/* Ordinary persistence by the textbook column algorithm (Edelsbrunner, Letscher and Zomorodian, "Topological persistence and
- * simplification", 2002), on the cells by the window that they first appear in. */
+/* Where a cell that is new in window w is first there: at the join before it, which has all that either
+ * window has; an intersection has what the window before it has. */
+static int arrival(const judge_case *c, int w) { return w == 0 ? 0 : c->intersection ? 2 * w : 2 * w - 1; }
+
+/* Ordinary persistence by the textbook column algorithm (Edelsbrunner, Letscher and Zomorodian, "Topological
+ * persistence and simplification", 2002), on the cells by the window that they first appear in. */
 static size_t ordinary(const judge_case *c, judge_bar *out) {
     static judge_simplex cell[MOST_CELLS];
     static int window[MOST_CELLS], low[MOST_CELLS];
@@ -96,7 +104,8 @@ static size_t ordinary(const judge_case *c, judge_bar *out) {
     memset(killed, 0, sizeof killed);
     for (size_t j = 0; j < n; j++) {
         for (size_t i = 0; i < j; i++) /* faces: one node less */
-            column[j][i] = (cell[i] & cell[j]) == cell[i] && __builtin_popcount(cell[i]) + 1 == __builtin_popcount(cell[j]);
+            column[j][i] = (cell[i] & cell[j]) == cell[i] &&
+                           __builtin_popcount(cell[i]) + 1 == __builtin_popcount(cell[j]);
         for (bool again = true; again;) {
             again = false;
             low[j] = -1;
@@ -117,10 +126,12 @@ static size_t ordinary(const judge_case *c, judge_bar *out) {
     for (size_t j = 0; j < n; j++) {
         int last = 2 * c->windows - 2;
         if (low[j] < 0 && !killed[j] && __builtin_popcount(cell[j]) <= 3) /* lives to the end */
-            out[m++] = (judge_bar){__builtin_popcount(cell[j]) - 1, window[j] == 0 ? 0 : 2 * window[j] - 1, last, false, false};
+            out[m++] =
+                (judge_bar){__builtin_popcount(cell[j]) - 1, arrival(c, window[j]), last, false, false};
         if (low[j] >= 0 && window[low[j]] < window[j]) {
-            int first = window[low[j]];
-            out[m++] = (judge_bar){__builtin_popcount(cell[low[j]]) - 1, first == 0 ? 0 : 2 * first - 1, 2 * window[j] - 2, false, true};
+            int first = arrival(c, window[low[j]]);
+            out[m++] = (judge_bar){__builtin_popcount(cell[low[j]]) - 1, first, arrival(c, window[j]) - 1,
+                                   false, true};
         }
     }
     return m;
@@ -141,20 +152,24 @@ static void growth_is_ordinary_persistence(void **state) {
     printf("seed %llu, %llu networks\n", (unsigned long long)seed, (unsigned long long)cases);
     for (uint64_t i = 0; i < cases; i++) {
         dice d = {seed + i * UINT64_C(1000003)};
-        judge_case c = {.nodes = dice_from(&d, 3, 8), .windows = dice_from(&d, 2, 8), .radius = 1, .dims = 7};
+        judge_case c = {.nodes = dice_from(&d, 3, 8), .windows = dice_from(&d, 2, 8), .dims = 7};
+        c.radius = dice_below(&d, 2) == 0 ? 1 : dice_from(&d, -1, 3);
+        c.intersection = dice_below(&d, 3) == 0;
         for (int w = 0; w < c.windows; w++) {
             c.from[w] = w;
             c.to[w] = w + 1;
         }
         c.events = dice_from(&d, 2, 24);
         for (int k = 0; k < c.events; k++) /* what comes stays */
-            c.event[k] = (judge_event){(int)dice_below(&d, (uint32_t)c.nodes), (int)dice_below(&d, (uint32_t)c.nodes),
-                                       dice_from(&d, 0, c.windows - 1), c.windows};
+            c.event[k] =
+                (judge_event){(int)dice_below(&d, (uint32_t)c.nodes), (int)dice_below(&d, (uint32_t)c.nodes),
+                              dice_from(&d, 0, c.windows - 1), c.windows};
         static judge_bar want[JUDGE_BARS], got[JUDGE_BARS];
         thole_memory memory = {0};
         thole_context context = {.memory = &memory, .threads = 1};
         thole_error error = {.text = ""};
-        size_t n = ordinary(&c, want), m = run_case_bars(&context, &c, (uint32_t)dice_from(&d, 0, 4), got, &error);
+        size_t n = ordinary(&c, want),
+               m = run_case_bars(&context, &c, (uint32_t)dice_from(&d, 0, 4), got, &error);
         qsort(want, n, sizeof *want, by_place);
         qsort(got, m, sizeof *got, by_place);
         if (!run_case_same(want, n, got, m)) {
@@ -172,7 +187,10 @@ static void growth_is_ordinary_persistence(void **state) {
 /* ---- properties --------------------------------------------------------------------------------------- */
 
 static judge_case random_case(dice *d) {
-    judge_case c = {.nodes = dice_from(d, 3, 10), .windows = dice_from(d, 1, 10), .radius = dice_from(d, -1, 2), .dims = 7};
+    judge_case c = {.nodes = dice_from(d, 3, 10),
+                    .windows = dice_from(d, 1, 10),
+                    .radius = dice_from(d, -1, 2),
+                    .dims = 7};
     for (int w = 0; w < c.windows; w++) {
         c.from[w] = 5 * w;
         c.to[w] = 5 * w + dice_from(d, 3, 9);
@@ -182,14 +200,15 @@ static judge_case random_case(dice *d) {
     c.events = dice_from(d, 5, 90);
     for (int k = 0; k < c.events; k++) {
         int start = dice_from(d, 0, 50);
-        c.event[k] = (judge_event){(int)dice_below(d, (uint32_t)c.nodes), (int)dice_below(d, (uint32_t)c.nodes), start,
-                                   start + dice_from(d, 1, 12)};
+        c.event[k] = (judge_event){(int)dice_below(d, (uint32_t)c.nodes),
+                                   (int)dice_below(d, (uint32_t)c.nodes), start, start + dice_from(d, 1, 12)};
     }
     c.intersection = dice_below(d, 2) == 1;
     return c;
 }
 
-/* Time turned round turns bars round: first and last change places, and so do births and deaths by addition and deletion. */
+/* Time turned round turns bars round: first and last change places, and so do births and deaths by addition
+ * and deletion. */
 static void time_turned_round(void **state) {
     (void)state;
     uint64_t cases = dice_cases(300), bars = 0;
@@ -208,7 +227,8 @@ static void time_turned_round(void **state) {
         thole_memory memory = {0};
         thole_context context = {.memory = &memory, .threads = 1};
         thole_error error;
-        size_t n = run_case_bars(&context, &c, 0, a, &error), m = run_case_bars(&context, &back, 0, b, &error);
+        size_t n = run_case_bars(&context, &c, 0, a, &error),
+               m = run_case_bars(&context, &back, 0, b, &error);
         int last = 2 * c.windows - 2;
         for (size_t k = 0; k < m; k++)
             b[k] = (judge_bar){b[k].dim, last - b[k].last, last - b[k].first, b[k].open_end, b[k].open_start};
@@ -248,13 +268,15 @@ static void names_do_not_matter(void **state) {
         thole_memory memory = {0};
         thole_context context = {.memory = &memory, .threads = 1};
         thole_error error;
-        size_t n = run_case_bars(&context, &c, 0, a, &error), m = run_case_bars(&context, &other, 0, b, &error);
+        size_t n = run_case_bars(&context, &c, 0, a, &error),
+               m = run_case_bars(&context, &other, 0, b, &error);
         assert_true(run_case_same(a, n, b, m));
     }
 }
 
 int main(void) {
-    const struct CMUnitTest tests[] = {cmocka_unit_test(powers_of_cycles), cmocka_unit_test(growth_is_ordinary_persistence),
-                                       cmocka_unit_test(time_turned_round), cmocka_unit_test(names_do_not_matter)};
+    const struct CMUnitTest tests[] = {
+        cmocka_unit_test(powers_of_cycles), cmocka_unit_test(growth_is_ordinary_persistence),
+        cmocka_unit_test(time_turned_round), cmocka_unit_test(names_do_not_matter)};
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -78,15 +78,7 @@ static void fewer_windows_cut_bars_short(void **state) {
         thole_zigzag_options options = options_for(i, 7);
         uint32_t a = dice_below(&d, (uint32_t)here.windows), b = dice_below(&d, (uint32_t)here.windows);
         uint32_t low = 2 * (a < b ? a : b), high = 2 * (a < b ? b : a);
-        bars whole = plan_bars(&here, options, 1), cut = {malloc((whole.n + 1) * sizeof *whole.at), 0};
-        for (size_t k = 0; k < whole.n; k++) {
-            thole_bar bar = whole.at[k];
-            if (bar.last < low || bar.first > high)
-                continue;
-            uint32_t first = bar.first < low ? low : bar.first, last = bar.last > high ? high : bar.last;
-            bool opens = bar_open_start(bar) && bar.first > low, ends = bar_open_end(bar) && bar.last < high;
-            cut.at[cut.n++] = (thole_bar){first - low, last - low, bar.dim, bar_kind_of(opens, ends)};
-        }
+        bars whole = plan_bars(&here, options, 1), cut = bars_cut(whole, low, high);
         here.windows = high / 2 - low / 2 + 1;
         memmove(here.from, here.from + low / 2, here.windows * sizeof *here.from);
         memmove(here.to, here.to + low / 2, here.windows * sizeof *here.to);
@@ -225,31 +217,7 @@ static void poles_lift_bars_by_a_dimension(void **state) {
 
 /* ---- unions against intersections ----------------------------------------------------------- */
 
-/* The strong diamond principle (Carlsson and de Silva, "Zigzag persistence", 2010): where the join is exactly
- * the union of its two windows, Mayer and Vietoris say how intervals change when the intersection takes its
- * place. An interval that begins or ends at a window or the join beside it moves to the other of the two, and
- * one that is in the join alone goes down a dimension. Graphs with all nodes kept are such: no clique is in
- * the union without being in one of the two. */
-static bars through_diamonds(bars of_unions, uint32_t last) {
-    bars out = {malloc((of_unions.n + 1) * sizeof *out.at), of_unions.n};
-    for (size_t i = 0; i < out.n; i++) {
-        thole_bar bar = of_unions.at[i];
-        if (bar.first == bar.last && bar.first % 2 == 1) {
-            assert_true(bar.dim > 0); /* two windows with all nodes have no piece that neither of them has */
-            assert_int_equal(bar.kind, THOLE_CLOSED_CLOSED);
-            out.at[i] = (thole_bar){bar.first, bar.last, (uint8_t)(bar.dim - 1), THOLE_OPEN_OPEN};
-            continue;
-        }
-        if (bar.first > 0)
-            bar.first += bar.first % 2 == 1 ? 1 : UINT32_MAX; /* one less */
-        if (bar.last < last)
-            bar.last += bar.last % 2 == 1 ? UINT32_MAX : 1;
-        out.at[i] = bar;
-    }
-    free(of_unions.at);
-    return out;
-}
-
+/* See bars_through_diamonds: no clique of a graph is in a union without being in one of the two. */
 static void unions_and_intersections_tell_the_same(void **state) {
     (void)state;
     size_t joins_only = 0;
@@ -260,8 +228,9 @@ static void unions_and_intersections_tell_the_same(void **state) {
         for (size_t k = 0; k < of_unions.n; k++)
             joins_only += of_unions.at[k].first == of_unions.at[k].last && of_unions.at[k].first % 2 == 1;
         options.join = THOLE_JOIN_INTERSECTION;
-        bars_expect_same(through_diamonds(of_unions, (uint32_t)(2 * here.windows - 2)),
+        bars_expect_same(bars_through_diamonds(of_unions, (uint32_t)(2 * here.windows - 2)),
                          plan_bars(&here, options, 2), "intersections");
+        bars_free(&of_unions);
     }
     assert_true(joins_only > (rounds() == 5 * SHAPES ? 100u : 0u));
 }

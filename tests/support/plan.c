@@ -122,12 +122,42 @@ void bars_expect_same(bars want, bars got, const char *what) {
     bars_free(&got);
 }
 
-bool bar_open_start(thole_bar bar) { return bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN; }
-
-bool bar_open_end(thole_bar bar) { return bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN; }
-
-uint8_t bar_kind_of(bool open_start, bool open_end) {
+static uint8_t kind_of(bool open_start, bool open_end) {
     if (open_start)
         return open_end ? THOLE_OPEN_OPEN : THOLE_OPEN_CLOSED;
     return open_end ? THOLE_CLOSED_OPEN : THOLE_CLOSED_CLOSED;
+}
+
+bars bars_cut(bars b, uint32_t low, uint32_t high) {
+    bars out = bars_copy(b);
+    out.n = 0;
+    for (size_t i = 0; i < b.n; i++) {
+        thole_bar bar = b.at[i];
+        if (bar.last < low || bar.first > high)
+            continue;
+        bool open_start = bar.first > low && (bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN);
+        bool open_end = bar.last < high && (bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN);
+        uint32_t first = bar.first < low ? low : bar.first, last = bar.last > high ? high : bar.last;
+        out.at[out.n++] = (thole_bar){first - low, last - low, bar.dim, kind_of(open_start, open_end)};
+    }
+    qsort(out.at, out.n, sizeof *out.at, by_place);
+    return out;
+}
+
+bars bars_through_diamonds(bars of_unions, uint32_t last) {
+    bars out = bars_copy(of_unions);
+    for (size_t i = 0; i < out.n; i++) {
+        thole_bar *bar = &out.at[i];
+        if (bar->first == bar->last && bar->first % 2 == 1) {
+            assert_true(bar->dim > 0);
+            assert_int_equal(bar->kind, THOLE_CLOSED_CLOSED);
+            *bar = (thole_bar){bar->first, bar->last, (uint8_t)(bar->dim - 1), THOLE_OPEN_OPEN};
+            continue;
+        }
+        if (bar->first > 0)
+            bar->first = bar->first % 2 == 1 ? bar->first + 1 : bar->first - 1;
+        if (bar->last < last)
+            bar->last = bar->last % 2 == 1 ? bar->last - 1 : bar->last + 1;
+    }
+    return out;
 }

@@ -31,11 +31,19 @@ bars plan_bars(const plan *p, thole_zigzag_options options, int threads);
 bars bars_copy(bars b);
 void bars_free(bars *b);
 
+/* What positions low to high see of the bars: cut to them, counted from low, and closed where cut. In the
+ * order dim, first, last. */
+bars bars_cut(bars b, uint32_t low, uint32_t high);
+
+/* From the bars of a graph with union joins and all nodes kept (`last`: its last position) those with
+ * intersections. Where a join is exactly the union of its two windows, Mayer and Vietoris say how intervals
+ * change when the intersection takes its place: one that begins or ends at a window or the join beside it
+ * moves to the other of the two, one that is in the join alone goes down by a dimension (the strong diamond
+ * principle: Carlsson and de Silva, "Zigzag persistence", Found. Comput. Math. 10, 2010). Fails when a piece
+ * is in a join alone. */
+bars bars_through_diamonds(bars of_unions, uint32_t last);
+
 /* Fail, with `what`, unless both have the same bars as often, in whatever order. Frees both. */
 void bars_expect_same(bars want, bars got, const char *what);
-
-bool bar_open_start(thole_bar bar);
-bool bar_open_end(thole_bar bar);
-uint8_t bar_kind_of(bool open_start, bool open_end);
 
 #endif

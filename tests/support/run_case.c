@@ -10,7 +10,8 @@ static void must(thole_status status, const thole_error *error) {
     exit(1);
 }
 
-void run_case_make(thole_context *context, const judge_case *c, thole_network **network, thole_windows **windows) {
+void run_case_make(thole_context *context, const judge_case *c, thole_network **network,
+                   thole_windows **windows) {
     thole_clock clock = {.kind = THOLE_PLAIN, .unit = "s"};
     thole_error error;
     thole_builder *builder;
@@ -24,7 +25,8 @@ void run_case_make(thole_context *context, const judge_case *c, thole_network **
     for (int i = 0; i < c->events; i++) {
         const judge_event *e = &c->event[i];
         bool kept;
-        must(thole_builder_event(builder, (thole_event){(uint32_t)e->u, (uint32_t)e->v, e->start, e->finish}, &kept, &error),
+        must(thole_builder_event(builder, (thole_event){(uint32_t)e->u, (uint32_t)e->v, e->start, e->finish},
+                                 &kept, &error),
              &error);
     }
     must(thole_builder_finish(builder, network, &error), &error);
@@ -45,6 +47,12 @@ thole_zigzag_options run_case_options(const judge_case *c, uint32_t block) {
                                   .block = block};
 }
 
+judge_bar run_case_bar(thole_bar bar) {
+    return (judge_bar){bar.dim, (int)bar.first, (int)bar.last,
+                       bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN,
+                       bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN};
+}
+
 size_t run_case_bars(thole_context *context, const judge_case *c, uint32_t block, judge_bar out[JUDGE_BARS],
                      thole_error *error) {
     thole_network *network;
@@ -54,11 +62,8 @@ size_t run_case_bars(thole_context *context, const judge_case *c, uint32_t block
     thole_zigzag_options options = run_case_options(c, block);
     thole_status status = thole_zigzag(context, network, windows, &options, &barcode, error);
     size_t n = status == THOLE_OK ? thole_barcode_count(barcode) : SIZE_MAX;
-    for (size_t i = 0; status == THOLE_OK && i < n && i < JUDGE_BARS; i++) {
-        thole_bar bar = thole_barcode_bar(barcode, i);
-        out[i] = (judge_bar){bar.dim, (int)bar.first, (int)bar.last, bar.kind == THOLE_OPEN_CLOSED || bar.kind == THOLE_OPEN_OPEN,
-                             bar.kind == THOLE_CLOSED_OPEN || bar.kind == THOLE_OPEN_OPEN};
-    }
+    for (size_t i = 0; status == THOLE_OK && i < n && i < JUDGE_BARS; i++)
+        out[i] = run_case_bar(thole_barcode_bar(barcode, i));
     thole_barcode_release(barcode);
     thole_network_release(network);
     thole_windows_release(windows);
@@ -78,7 +83,7 @@ bool run_case_same(const judge_bar *a, size_t n, const judge_bar *b, size_t m) {
 void run_case_print_bars(const char *who, const judge_bar *bars, size_t n) {
     printf("  %s:", who);
     for (size_t i = 0; i < n; i++)
-        printf(" %d%c%g,%g%c", bars[i].dim, bars[i].open_start ? '(' : '[', 1 + bars[i].first / 2.0, 1 + bars[i].last / 2.0,
-               bars[i].open_end ? ')' : ']');
+        printf(" %d%c%g,%g%c", bars[i].dim, bars[i].open_start ? '(' : '[', 1 + bars[i].first / 2.0,
+               1 + bars[i].last / 2.0, bars[i].open_end ? ')' : ']');
     printf("\n");
 }
