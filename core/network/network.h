@@ -107,6 +107,7 @@ THOLE_API thole_status thole_builder_finish(thole_builder *builder, thole_networ
 THOLE_API thole_network *thole_network_retain(thole_network *network);
 THOLE_API void thole_network_release(thole_network *network);
 
+/* What times mean in it, and what became of its input. */
 THOLE_API const thole_clock *thole_network_clock(const thole_network *network);
 THOLE_API const thole_account *thole_network_account(const thole_network *network);
 
@@ -114,6 +115,8 @@ THOLE_API size_t thole_network_count(const thole_network *network);            /
 THOLE_API thole_event thole_network_event(const thole_network *network, size_t i); /* i < count; by start */
 THOLE_API uint32_t thole_network_row(const thole_network *network, size_t i);  /* its number in the store */
 
+/* Nodes are numbered from 0 in the order in which they were made. A name is NUL-ended, *length (may be NULL) its bytes;
+ * node < the number of nodes. Finding is false for a name that is no node's. */
 THOLE_API uint32_t thole_network_nodes(const thole_network *network); /* nodes of the store, in view or not */
 THOLE_API const char *thole_network_node_name(const thole_network *network, uint32_t node, size_t *length);
 THOLE_API bool thole_network_find_node(const thole_network *network, const char *name, size_t length, uint32_t *node);

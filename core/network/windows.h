@@ -28,6 +28,8 @@ THOLE_API thole_status thole_windows_sliding(thole_context *context, int64_t sta
 
 THOLE_API thole_windows *thole_windows_retain(thole_windows *windows);
 THOLE_API void thole_windows_release(thole_windows *windows);
+
+/* How many, and the times and label of window i (from 0, below the count); the bytes that they take. */
 THOLE_API size_t thole_windows_count(const thole_windows *windows);
 THOLE_API int64_t thole_windows_start(const thole_windows *windows, size_t i);
 THOLE_API int64_t thole_windows_finish(const thole_windows *windows, size_t i);

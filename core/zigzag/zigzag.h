@@ -48,6 +48,7 @@ THOLE_API thole_status thole_zigzag(thole_context *context, const thole_network 
 
 THOLE_API thole_barcode *thole_barcode_retain(thole_barcode *barcode);
 THOLE_API void thole_barcode_release(thole_barcode *barcode);
+/* How many bars there are. */
 THOLE_API size_t thole_barcode_count(const thole_barcode *barcode);
 /* Bar i, in the order dim, first, last, kind (by name: closed-closed, closed-open, open-closed, open-open). */
 THOLE_API thole_bar thole_barcode_bar(const thole_barcode *barcode, size_t i);

@@ -1,44 +1,52 @@
 -- Calls that the house does not make: unbounded, locale-bound, process-wide, or past the one allocator.
 
-local everywhere = { "atoi", "atol", "atof", "strtod", "strtof", "sscanf", "strcpy", "strcat", "sprintf", "vsprintf", "strtok",
-    "gets", "gmtime", "localtime", "setlocale", "system", "popen", "alloca", "tmpnam", "rand", "srand", "abort" }
-local allocator = { "malloc", "calloc", "realloc", "free" }
-local quiet = { "printf", "puts", "putchar", "exit", "_exit", "getenv", "perror" }
+package.path = "tests/lint/support/?.lua;" .. package.path
+local rule = require "rule"
+local c_text = require "c_text"
+
+local function set(names)
+    local out = {}
+    for name in names:gmatch("%S+") do out[name] = true end
+    return out
+end
+
+local EVERYWHERE = set [[atoi atol atoll atof strtod strtof strtold sscanf fscanf scanf strcpy strncpy stpcpy strcat strncat
+    sprintf vsprintf strtok gets asctime ctime gmtime localtime mktime setlocale system popen alloca tmpnam tmpfile mktemp
+    rand srand random srandom abort assert malloc calloc realloc free]]
+-- A library in somebody's program does not print, end it, or jump; the command may.
+local LIBRARY = set [[printf vprintf fprintf vfprintf puts fputs putchar fputc putc perror exit _exit quick_exit atexit raise
+    signal sigaction setjmp longjmp getenv setenv putenv chdir umask fork]]
 -- Where a rule does not hold, and why.
-local except = {
-    ["core/base/memory.c"] = { malloc = 1, calloc = 1, realloc = 1, free = 1 }, -- the one place that allocates
-    ["core/clock/zone.c"] = { getenv = 1 },                                    -- TZDIR
+local EXCEPT = {
+    ["core/base/memory.c"] = set "malloc realloc free", -- the one place that allocates
+    ["core/clock/zone.c"] = set "getenv", -- TZDIR
 }
 
-local faults, seen = 0, 0
-for path in io.popen("git ls-files core"):lines() do
-    if path:match("%.[ch]$") then
-        seen = seen + 1
-        local lua_side = path:match("^core/bind/") or path:match("^core/host/")
-        local text = io.open(path):read("a")
-        -- Comments and texts speak of anything; newlines stay, for the numbers of lines.
-        text = text:gsub("/%*.-%*/", function(c) return c:gsub("[^\n]", " ") end):gsub("//[^\n]*", "")
-        text = text:gsub('"[^"\n]*"', '""')
-        local number = 0
-        for line in (text .. "\n"):gmatch("(.-)\n") do
-            number = number + 1
-            local function look(list)
-                for _, name in ipairs(list) do
-                    local at = line:find("%f[%w_]" .. name .. "%s*%(")
-                    local member = at and line:sub(1, at - 1):match("[%.>]$")
-                    if at and not member and not (except[path] and except[path][name]) then
-                        faults = faults + 1
-                        print(string.format("%s:%d: %s is banned", path, number, name))
-                    end
-                end
-            end
-            look(everywhere)
-            if not lua_side then
-                look(allocator)
-                look(quiet)
+local function check(path, text, fault)
+    local except = EXCEPT[path] or {}
+    local command = path:find("^core/host/")
+    for number, line in rule.lines(c_text.bare(text)) do
+        for at, name in line:gmatch("()%f[%w_]([%a_][%w_]*)%s*%f[(]%(") do
+            local member = line:sub(1, at - 1):find("%.$") or line:sub(1, at - 1):find("%->$")
+            if not member and not except[name] and (EVERYWHERE[name] or LIBRARY[name] and not command) then
+                fault(number, "%s is banned", name)
             end
         end
     end
 end
-print(seen .. " files looked at")
-os.exit(faults == 0 and seen > 20)
+
+rule.run {
+    check = check, files = rule.files("core", "%.[ch]$"), least = 50,
+    wrong = {
+        { "core/base/x.c", "int f(const char *s) { return atoi(s); }\n", "x.c:1: atoi is banned" },
+        { "core/base/x.c", "char c = '\"'; /* \" */\nvoid f(void) { free (c); }\n", "x.c:2: free is banned" },
+        { "core/bind/x.c", "void f(void) {\n    fputs(\"free(\", stdout);\n}\n", "x.c:2: fputs is banned" },
+        { "core/clock/zone.c", "void *f(void) { return malloc(getenv(\"A\") != NULL); }\n", "malloc is banned" },
+        { "core/host/x.c", "void f(const char *a) { system(a); }\n", "system is banned" },
+    },
+    right = {
+        { "core/base/x.c", "/* malloc(1) */ void f(x *y) { tb_free(y); y->free(1); y.free(2); } // exit(1)\n" },
+        { "core/base/memory.c", "void f(void *p) { free(p); }\n" },
+        { "core/host/x.c", "int f(void) { return printf(\"\\\" system(1)\"); }\n" },
+    },
+}
