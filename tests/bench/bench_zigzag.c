@@ -1,11 +1,12 @@
 /* How fast barcodes are computed, how that grows, and in how much memory, on seeded networks of many shapes.
  *
- *     bench_zigzag [CSV]
+ *     bench_zigzag [FILE]
  *
- * The reference of the same run is the rank computation of a single window by M4RI (boundary matrices of dimensions 1 and 2,
- * dense), summed over a sample of windows and scaled to all of them: what it takes to know the Betti numbers of each window
- * by itself, without what connects them. Times are the best of three; exponents are fitted by least squares on logarithms.
- * The table is written to CSV too when that is named. */
+ * The reference of the same run is the rank computation of a single window by M4RI (boundary matrices of
+ * dimensions 1 and 2, dense), summed over a sample of windows and scaled to all of them: what it takes to
+ * know the Betti numbers of each window by itself, without what connects them. Times are the best of three;
+ * exponents are fitted by least squares on logarithms. The table is written to FILE too, as comma-separated
+ * values; without one, beside the program, as bench_zigzag.csv. */
 #include <math.h>
 #include <stdio.h>
 #include <stdlib.h>
@@ -42,7 +43,8 @@ static double rank_seconds(const thole_network *network, const thole_windows *wi
         size_t w = n * (2 * k + 1) / (2 * samples), m = 0, kept = 0;
         for (size_t i = 0; i < events; i++) {
             thole_event e = thole_network_event(network, i);
-            if (e.start < thole_windows_finish(windows, w) && e.finish > thole_windows_start(windows, w) && e.from != e.to) {
+            if (e.start < thole_windows_finish(windows, w) && e.finish > thole_windows_start(windows, w) &&
+                e.from != e.to) {
                 end[2 * m] = (int)(e.from < e.to ? e.from : e.to);
                 end[2 * m + 1] = (int)(e.from < e.to ? e.to : e.from);
                 m++;
@@ -66,7 +68,8 @@ static double rank_seconds(const thole_network *network, const thole_windows *wi
     return looked == 0 ? 0 : spent * (double)n / (double)looked;
 }
 
-static figures measure(const shape *s, thole_radius kind, uint32_t radius, uint32_t dims, int threads, size_t samples) {
+static figures measure(const shape *s, thole_radius kind, uint32_t radius, uint32_t dims, int threads,
+                       size_t samples) {
     thole_memory memory = {0};
     thole_context context = {.memory = &memory, .threads = threads};
     thole_network *network;
@@ -99,17 +102,19 @@ static figures measure(const shape *s, thole_radius kind, uint32_t radius, uint3
     return f;
 }
 
-static void row(const char *name, const char *radius, const shape *s, int threads, const figures *f, double exponent) {
+static void row(const char *name, const char *radius, const shape *s, int threads, const figures *f,
+                double exponent) {
     char grows[16] = "", ratio[16] = "";
     if (!isnan(exponent))
         snprintf(grows, sizeof grows, "%.2f", exponent);
     if (f->reference > 0)
         snprintf(ratio, sizeof ratio, "%.0f", f->reference / f->seconds);
-    printf("%-24s %-6s %7u %7u %7d %10.0f %8.3f %8.2f %8.1f %8s %9s\n", name, radius, (unsigned)s->windows, (unsigned)s->links, threads,
-           f->cells, f->seconds, f->cells / f->seconds / 1e6, f->peak / f->cells, grows, ratio);
-    if (csv != NULL)
-        fprintf(csv, "%s,%s,%u,%u,%d,%.0f,%.6f,%.0f,%.1f,%s,%s\n", name, radius, (unsigned)s->windows, (unsigned)s->links, threads,
-                f->cells, f->seconds, f->cells / f->seconds, f->peak / f->cells, grows, ratio);
+    printf("%-24s %-6s %7u %7u %7d %10.0f %8.3f %8.2f %8.1f %8s %9s\n", name, radius, (unsigned)s->windows,
+           (unsigned)s->links, threads, f->cells, f->seconds, f->cells / f->seconds / 1e6, f->peak / f->cells,
+           grows, ratio);
+    fprintf(csv, "%s,%s,%u,%u,%d,%.0f,%.6f,%.0f,%.1f,%s,%s\n", name, radius, (unsigned)s->windows,
+            (unsigned)s->links, threads, f->cells, f->seconds, f->cells / f->seconds, f->peak / f->cells,
+            grows, ratio);
     fflush(stdout);
 }
 
@@ -149,17 +154,27 @@ static void growth_in_links(void) {
 }
 
 int main(int n, char **argument) {
-    csv = n > 1 ? fopen(argument[1], "w") : NULL;
-    printf("%-24s %-6s %7s %7s %7s %10s %8s %8s %8s %8s %9s\n", "shape", "radius", "windows", "links", "threads", "cells", "seconds",
-           "Mcells/s", "B/cell", "exponent", "x M4RI");
-    if (csv != NULL)
-        fprintf(csv, "shape,radius,windows,links,threads,cells,seconds,cells_a_second,peak_bytes_a_cell,exponent,times_faster_than_m4ri\n");
+    char beside[4096];
+    const char *path = n > 1 ? argument[1] : beside;
+    int length = snprintf(beside, sizeof beside, "%s.csv", argument[0]);
+    csv = length > 0 && (size_t)length < sizeof beside ? fopen(path, "w") : NULL;
+    if (csv == NULL) {
+        fprintf(stderr, "cannot write \"%s\": name a file that can be written\n", path);
+        return 1;
+    }
+    printf("%-24s %-6s %7s %7s %7s %10s %8s %8s %8s %8s %9s\n", "shape", "radius", "windows", "links",
+           "threads", "cells", "seconds", "Mcells/s", "B/cell", "exponent", "x M4RI");
+    fprintf(csv, "shape,radius,windows,links,threads,cells,seconds,cells_a_second,peak_bytes_a_cell,exponent,"
+                 "times_faster_than_m4ri\n");
     growth_in_windows(THOLE_RADIUS_GRAPH, "graph");
     growth_in_windows(THOLE_RADIUS_HOPS, "1");
     growth_in_links();
-    static const struct { const char *name; shape shape; } shapes[] = {
-        {"contacts", {SHAPE_CONTACTS, 150, 600, 900, 0.3}}, {"star", {SHAPE_STAR, 20000, 100, 10000, 0.3}},
-        {"path", {SHAPE_PATH, 10001, 100, 10000, 0.3}},     {"ring", {SHAPE_RING, 10000, 100, 10000, 0.3}},
+    static const struct {
+        const char *name;
+        shape shape;
+    } shapes[] = {
+        {"contacts", {SHAPE_CONTACTS, 150, 600, 900, 0.3}},  {"star", {SHAPE_STAR, 20000, 100, 10000, 0.3}},
+        {"path", {SHAPE_PATH, 10001, 100, 10000, 0.3}},      {"ring", {SHAPE_RING, 10000, 100, 10000, 0.3}},
         {"islands", {SHAPE_ISLANDS, 10000, 100, 6000, 0.3}}, {"flicker", {SHAPE_FLICKER, 2500, 300, 1500, 1}},
         {"still", {SHAPE_STILL, 2500, 100000, 1500, 0}},
     };
@@ -167,11 +182,16 @@ int main(int n, char **argument) {
         figures f = measure(&shapes[i].shape, THOLE_RADIUS_HOPS, 1, 3, 1, 0);
         row(shapes[i].name, "1", &shapes[i].shape, 1, &f, (double)NAN);
     }
-    shape timetable = {SHAPE_TIMETABLE, 2500, 2000, 1500, 0.3}, small = {SHAPE_TIMETABLE, 2500, 200, 1500, 0.3};
-    figures two = measure(&timetable, THOLE_RADIUS_HOPS, 1, 3, 2, 0), far = measure(&small, THOLE_RADIUS_HOPS, 2, 3, 1, 0);
+    shape timetable = {SHAPE_TIMETABLE, 2500, 2000, 1500, 0.3},
+          small = {SHAPE_TIMETABLE, 2500, 200, 1500, 0.3};
+    figures two = measure(&timetable, THOLE_RADIUS_HOPS, 1, 3, 2, 0),
+            far = measure(&small, THOLE_RADIUS_HOPS, 2, 3, 1, 0);
     row("timetable, 2 threads", "1", &timetable, 2, &two, (double)NAN);
     row("timetable", "2", &small, 1, &far, (double)NAN);
-    if (csv != NULL && fclose(csv) != 0)
+    if (fclose(csv) != 0) {
+        fprintf(stderr, "cannot write \"%s\": is the disk full?\n", path);
         return 1;
+    }
+    printf("The same as comma-separated values: %s\n", path);
     return 0;
 }
