@@ -167,6 +167,18 @@ static void two_copies_double_every_bar(void **state) {
     }
 }
 
+/* A radius beyond the longest way in the network reaches no further. */
+static void a_radius_beyond_everything_changes_nothing(void **state) {
+    (void)state;
+    shape s = {SHAPE_PATH, 9, 40, 8, 0.3};
+    plan_shape(&s, false, &here);
+    thole_zigzag_options options = {.radius_kind = THOLE_RADIUS_HOPS, .radius = 8, .dims = 7};
+    bars far = plan_bars(&here, options, 1);
+    assert_true(far.n > 20);
+    options.radius = UINT32_MAX;
+    bars_expect_same(far, plan_bars(&here, options, 1), "the highest radius");
+}
+
 /* Link every node below `nodes` with a new one, at all times. */
 static void add_pole(plan *p, uint32_t nodes) {
     for (uint32_t v = 0; v < nodes; v++)
@@ -242,6 +254,7 @@ int main(void) {
         cmocka_unit_test(a_window_said_twice_only_stretches),
         cmocka_unit_test(times_may_be_as_far_apart_as_they_go),
         cmocka_unit_test(two_copies_double_every_bar),
+        cmocka_unit_test(a_radius_beyond_everything_changes_nothing),
         cmocka_unit_test(poles_lift_bars_by_a_dimension),
         cmocka_unit_test(unions_and_intersections_tell_the_same),
     };

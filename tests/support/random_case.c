@@ -114,8 +114,8 @@ void random_case(dice *d, judge_case *c) {
                                     PATTERN_PAIRS,  PATTERN_PAIRS,     PATTERN_PAIRS,  PATTERN_THIRDS,
                                     PATTERN_HALVES, PATTERN_CYCLE,     PATTERN_CHORDS, PATTERN_CYCLE,
                                     PATTERN_CHORDS, PATTERN_SUSPENSION};
-    static const int radii[] = {-1, -1, 0, 1, 1, 1, 2, 2, 3};
-    static const unsigned dims[] = {1, 2, 3, 3, 7, 7, 7, 4, 6, 15};
+    static const int radii[] = {-1, -1, -1, 0, 1, 1, 1, 1, 2, 2, 3, 8};
+    static const unsigned dims[] = {1, 2, 3, 3, 7, 7, 7, 4, 5, 6, 8, 10, 15};
     *c = (judge_case){.nodes = dice_from(d, 3, 9)};
     pattern kind = kinds[dice_below(d, sizeof kinds / sizeof *kinds)];
     random_windows(d, c);
@@ -123,7 +123,7 @@ void random_case(dice *d, judge_case *c) {
         c->nodes = 6;
     if (kind == PATTERN_PAIRS && dice_below(d, 3) > 0)
         c->nodes = (c->nodes < 6 ? 6 : 8) + dice_from(d, 0, 1);
-    c->radius = radii[dice_below(d, 9)];
+    c->radius = radii[dice_below(d, sizeof radii / sizeof *radii)];
     /* Voids are at radius 1 here, */
     if (kind == PATTERN_PAIRS || kind == PATTERN_SUSPENSION)
         c->radius = dice_below(d, 6) == 0 ? c->radius : 1;
@@ -136,8 +136,8 @@ void random_case(dice *d, judge_case *c) {
     }
     c->intersection = dice_below(d, 2) == 1;
     c->all_nodes = dice_below(d, 5) == 0;
-    c->dims = dims[dice_below(d, 10)];
-    if ((kind == PATTERN_PAIRS || kind == PATTERN_CYCLE) && (c->dims < 4 || c->nodes > 7))
+    c->dims = dims[dice_below(d, sizeof dims / sizeof *dims)];
+    if ((kind == PATTERN_PAIRS || kind == PATTERN_CYCLE) && (c->dims < 4 || (c->nodes > 7 && c->dims < 8)))
         c->dims = 15;
     if (kind == PATTERN_ANY)
         events_anywhere(d, c);
