@@ -382,7 +382,7 @@ static void filters_agree_with_one_event_at_a_time(void **state) {
         thole_network_release(all);
         assert_int_equal(atomic_load(&memory.used), 0);
     }
-    assert_true(kept > 10000 && dropped > 10000);
+    assert_true(kept > dice_cases(10000) && dropped > dice_cases(10000)); /* both sides were seen */
 }
 
 static void wrong_filters_are_refused(void **state) {

@@ -3,7 +3,6 @@
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
 
 #include <cmocka.h>
@@ -12,6 +11,7 @@
 #include "ingest/rows.h"
 #include "ingest/utf8.h"
 #include "ingest/words.h"
+#include "support/dice.h"
 
 static uint64_t seed = UINT64_C(0xD1B54A32D192ED03);
 
@@ -145,8 +145,7 @@ static void test_against_libcsv(void **state) {
     (void)state;
     static found wanted, mine;
     static const size_t BLOCKS[] = {1, 3, 8, 17, 64, 300, 100000};
-    const char *cases = getenv("CASES");
-    long many = 6000 * (cases != NULL ? strtol(cases, NULL, 10) : 1);
+    long many = (long)dice_cases(6000);
     for (long i = 0; i < many; i++) {
         static char text[8192];
         char separator = i % 2 ? ',' : ';';

@@ -66,9 +66,11 @@ function check.without_core()
     end
 end
 
--- Numbers for random cases, from a seed that is printed and can be set: SEED=7. CASES multiplies them.
+-- Numbers for random cases, from a seed that is printed and can be set: SEED=7. n of them times the multiplier
+-- CASES, which may be a fraction; at least one.
 local seed = math.tointeger(tonumber(os.getenv("SEED") or 20310303))
-check.cases = math.tointeger(tonumber(os.getenv("CASES") or 1))
+local multiplier = tonumber(os.getenv("CASES") or 1)
+function check.cases(n) return math.max(1, n * multiplier // 1) end
 function check.random(...)
     if seed then
         math.randomseed(seed)

@@ -117,7 +117,7 @@ end
 
 local SHAPES = { post = "closed", ring = "open" }
 
-for _ = 1, 20 * check.cases do
+for _ = 1, check.cases(20) do
     local n = check.random(2, 40)
     local windows = stand_in.windows(sliding(check.random(0, 1000), 20, 10, n))
     local barcode = stand_in.barcode(windows, stand_in.random_bars(check.random, n, check.random(0, 60)))
@@ -172,7 +172,7 @@ check.truthy(not check.files["odd.svg"]:find("<b>", 1, true)
 
 -- Windows that overlap, touch and leave gaps: every moment belongs to the window that holds it and whose
 -- centre is nearest. Recomputed by trying every whole number.
-for _ = 1, 30 * check.cases do
+for _ = 1, check.cases(30) do
     local n, list, at = check.random(1, 12), {}, 0
     for i = 1, n do
         at = at + 2 * check.random(1, 8)
@@ -205,7 +205,7 @@ end
 
 -- The area under a curve is the sum over windows of number times share.
 local svg_curve = require "thole.svg_curve"
-for _ = 1, 10 * check.cases do
+for _ = 1, check.cases(10) do
     local n = check.random(2, 30)
     local windows = stand_in.windows(sliding(0, 20, check.random(5, 30), n))
     local barcode = stand_in.barcode(windows, stand_in.random_bars(check.random, n, 40))
