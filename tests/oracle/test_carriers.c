@@ -1,37 +1,20 @@
-/* Carriers of bars on random networks: at every position they are cycles of the complex there, a basis of its
- * homology together, a boundary where an addition is about to kill the bar, and one where a deletion has just
- * borne it. */
+/* Carriers of bars on random networks. At every position they are cycles of the complex there and together a
+ * basis of its homology; each comes from where its bar begins and goes on to where it ends, through all
+ * positions between; and none depends on threads. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
 #include <stdint.h>
 #include <stdio.h>
 #include <stdlib.h>
+#include <string.h>
 
 #include <cmocka.h>
 
-#include "support/dice.h"
+#include "support/random_case.h"
 #include "support/run_case.h"
 
-enum { NETWORKS = 150, MOST_CHAIN = 512, MOST_BARS = 256 };
-
-static void random_case(dice *d, judge_case *c) {
-    static const int radii[] = {-1, 1, 1, 2};
-    *c = (judge_case){.nodes = dice_from(d, 4, 9), .windows = dice_from(d, 1, 6), .dims = 3};
-    for (int i = 0; i < c->windows; i++) {
-        c->from[i] = 6 * i;
-        c->to[i] = 6 * i + dice_from(d, 4, 9);
-    }
-    c->events = dice_from(d, 4, 60);
-    for (int i = 0; i < c->events; i++) {
-        int start = dice_from(d, 0, 36);
-        c->event[i] =
-            (judge_event){(int)dice_below(d, (uint32_t)c->nodes), (int)dice_below(d, (uint32_t)c->nodes),
-                          start, start + dice_from(d, 0, 9)};
-    }
-    c->radius = radii[dice_below(d, 4)];
-    c->intersection = dice_below(d, 2) == 1;
-}
+enum { NETWORKS = 400, MOST_CHAIN = 512, MOST_BARS = 256 };
 
 typedef struct chain {
     judge_simplex cell[MOST_CHAIN];
@@ -76,6 +59,163 @@ static chain chain_of(const thole_carriers *carriers, size_t i, uint32_t dim) {
     return x;
 }
 
+/* ---- spaces of chains as lists of bits: a chain of nodes, or of links, is a number ---------------- */
+
+enum { MOST_VECTORS = 600 };
+
+typedef struct span {
+    uint64_t at[MOST_VECTORS];
+    size_t n;
+} span;
+
+/* The bit of a simplex; a link's is behind those of nodes. */
+static uint64_t bit_of(judge_simplex s) {
+    int u = __builtin_ctz(s), v = 31 - __builtin_clz(s);
+    return UINT64_C(1) << (u == v ? u : 9 + u * (17 - u) / 2 + v - u - 1);
+}
+
+static void add(span *x, uint64_t vector) {
+    assert_true(x->n < MOST_VECTORS);
+    x->at[x->n++] = vector;
+}
+
+/* Take a vector with that bit out of x, and the bit out of all others; 0 when none has it. */
+static uint64_t take_out(span *x, int bit) {
+    for (size_t with = 0; with < x->n; with++) {
+        if ((x->at[with] >> bit & 1) == 0)
+            continue;
+        uint64_t vector = x->at[with];
+        x->at[with] = x->at[--x->n];
+        for (size_t i = 0; i < x->n; i++)
+            if (x->at[i] >> bit & 1)
+                x->at[i] ^= vector;
+        return vector;
+    }
+    return 0;
+}
+
+/* Keep what is without the bits of `outside`. */
+static void keep_without(span *x, uint64_t outside) {
+    for (int bit = 0; bit < 64; bit++)
+        if (outside >> bit & 1)
+            take_out(x, bit);
+}
+
+/* A basis of x in its place. */
+static void thin(span *x) {
+    uint64_t basis[64];
+    size_t n = 0;
+    for (int bit = 0; bit < 64; bit++) {
+        uint64_t vector = take_out(x, bit);
+        if (vector != 0)
+            basis[n++] = vector;
+    }
+    memcpy(x->at, basis, n * sizeof *basis);
+    x->n = n;
+}
+
+static bool contains(span x, uint64_t vector) {
+    for (int bit = 0; bit < 64; bit++) {
+        uint64_t row = take_out(&x, bit);
+        if (vector >> bit & 1)
+            vector ^= row;
+    }
+    return vector == 0;
+}
+
+static uint64_t bits_at(const judge_case *c, int t, int p) {
+    judge_simplex *list;
+    size_t n = judge_simplices(c, t, p, &list);
+    uint64_t bits = 0;
+    for (size_t i = 0; i < n; i++)
+        bits |= bit_of(list[i]);
+    free(list);
+    return bits;
+}
+
+/* Boundaries of the simplices of dimension p + 1 at t. */
+static void add_bounds(const judge_case *c, int t, int p, span *x) {
+    judge_simplex *list;
+    size_t n = judge_simplices(c, t, p + 1, &list);
+    for (size_t i = 0; i < n; i++) {
+        uint64_t vector = 0;
+        for (int u = 0; u < c->nodes; u++)
+            if (list[i] >> u & 1)
+                vector ^= bit_of((judge_simplex)(list[i] & ~(1u << u)));
+        add(x, vector);
+    }
+    free(list);
+}
+
+static void cycles_at(const judge_case *c, int t, int p, span *x) {
+    judge_simplex *list;
+    size_t n = judge_simplices(c, t, p, &list);
+    x->n = 0;
+    for (size_t i = 0; i < n; i++) {
+        uint64_t vector = bit_of(list[i]);
+        for (int u = 0; p > 0 && u < c->nodes; u++)
+            if (list[i] >> u & 1)
+                vector ^= bit_of((judge_simplex)(1u << u));
+        add(x, vector);
+    }
+    free(list);
+    if (p > 0)
+        keep_without(x, (UINT64_C(1) << 9) - 1);
+}
+
+/* Whether the complexes beside t hold the one at t, rather than the reverse. */
+static bool within_neighbours(const judge_case *c, int t) { return (t % 2 == 0) != c->intersection; }
+
+/* Whether `vector`, at t, belongs to cycles at all positions from a bar's end to t, neighbours being the same
+ * but for a boundary in the larger complex; and, when the bar is open at that end, to one that is a boundary
+ * just beyond. That is what an interval of a direct sum is. side: -1 for the start, 1 for the finish. */
+static bool goes_through(const judge_case *c, int p, int end, int side, bool open, int t, uint64_t vector) {
+    static span x;
+    x.n = 0;
+    if (open) {
+        add_bounds(c, end + side, p, &x);
+        keep_without(&x, ~bits_at(c, end, p));
+    } else {
+        cycles_at(c, end, p, &x);
+    }
+    add_bounds(c, end, p, &x);
+    for (int at = end; at != t; at -= side) {
+        thin(&x);
+        if (!within_neighbours(c, at))
+            keep_without(&x, ~bits_at(c, at - side, p));
+        add_bounds(c, at - side, p, &x);
+    }
+    return contains(x, vector);
+}
+
+/* Pieces: each a whole one, in the order of its nodes. */
+static void check_piece(const judge_case *c, int t, const uint32_t *nodes, size_t n) {
+    judge_simplex *links;
+    size_t m = judge_simplices(c, t, 1, &links);
+    unsigned piece = 1u << nodes[0], told = 0;
+    for (bool again = true; again;) {
+        again = false;
+        for (size_t i = 0; i < m; i++)
+            if ((links[i] & piece) != 0 && (links[i] & ~piece) != 0) {
+                piece |= links[i];
+                again = true;
+            }
+    }
+    for (size_t i = 0; i < n; i++) {
+        assert_true(i == 0 || nodes[i - 1] < nodes[i]);
+        told |= 1u << nodes[i];
+    }
+    assert_int_equal(told, piece);
+    free(links);
+}
+
+/* Walks: where a link fills the triangle with two in a row, it stands in for them. */
+static void check_walk(const judge_case *c, int t, const uint32_t *nodes, size_t n) {
+    uint64_t links = bits_at(c, t, 1);
+    for (size_t i = 0; i < n && n > 3 && c->radius > 0; i++)
+        assert_true((links & bit_of((judge_simplex)(1u << nodes[i] | 1u << nodes[(i + 2) % n]))) == 0);
+}
+
 static uint64_t check_position(thole_context *context, const judge_case *c, const thole_network *network,
                                const thole_barcode *barcode, int t, uint32_t dim) {
     static chain chains[MOST_BARS];
@@ -83,7 +223,6 @@ static uint64_t check_position(thole_context *context, const judge_case *c, cons
     size_t lengths[MOST_BARS];
     thole_error error;
     thole_carriers *carriers;
-    int positions = 2 * c->windows - 1;
     assert_int_equal(thole_barcode_carriers(context, barcode, network, (size_t)t, dim, &carriers, &error),
                      THOLE_OK);
     size_t n = thole_carriers_count(carriers);
@@ -97,15 +236,47 @@ static uint64_t check_position(thole_context *context, const judge_case *c, cons
         assert_false(judge_spans(c, t, (int)dim, chains[i].cell, chains[i].n, lists, lengths, i));
         thole_bar bar = thole_barcode_bar(barcode, thole_carriers_bar(carriers, i));
         assert_true((int)bar.first <= t && t <= (int)bar.last && bar.dim == dim);
-        bool into_bigger = t + 1 < positions && (t % 2 == 0) != c->intersection;
-        bool from_bigger = t > 0 && ((t - 1) % 2 == 0) == c->intersection;
-        if ((int)bar.last == t && into_bigger)
-            assert_true(judge_spans(c, t + 1, (int)dim, chains[i].cell, chains[i].n, NULL, NULL, 0));
-        if ((int)bar.first == t && from_bigger)
-            assert_true(judge_spans(c, t - 1, (int)dim, chains[i].cell, chains[i].n, NULL, NULL, 0));
+        judge_bar judged = run_case_bar(bar);
+        uint64_t vector = 0;
+        for (size_t k = 0; k < chains[i].n; k++)
+            vector ^= bit_of(chains[i].cell[k]);
+        assert_true(goes_through(c, (int)dim, judged.first, -1, judged.open_start, t, vector));
+        assert_true(goes_through(c, (int)dim, judged.last, 1, judged.open_end, t, vector));
+        for (size_t part = 0; part < thole_carriers_parts(carriers, i); part++) {
+            size_t nodes;
+            const uint32_t *at = thole_carriers_part(carriers, i, part, &nodes);
+            if (dim == 0)
+                check_piece(c, t, at, nodes);
+            else
+                check_walk(c, t, at, nodes);
+        }
     }
     thole_carriers_release(carriers);
     return n;
+}
+
+/* How many threads there are cannot be seen. (Among classes that begin or end together `block` may choose
+ * another; each is judged above.) */
+static void expect_same_carriers(thole_context *context, const thole_barcode *barcode, thole_context *other,
+                                 const thole_barcode *copy, const thole_network *network, size_t t,
+                                 uint32_t dim) {
+    thole_carriers *a, *b;
+    thole_error error;
+    assert_int_equal(thole_barcode_carriers(context, barcode, network, t, dim, &a, &error), THOLE_OK);
+    assert_int_equal(thole_barcode_carriers(other, copy, network, t, dim, &b, &error), THOLE_OK);
+    assert_int_equal(thole_carriers_count(a), thole_carriers_count(b));
+    for (size_t i = 0; i < thole_carriers_count(a); i++) {
+        assert_int_equal(thole_carriers_bar(a, i), thole_carriers_bar(b, i));
+        assert_int_equal(thole_carriers_parts(a, i), thole_carriers_parts(b, i));
+        for (size_t part = 0; part < thole_carriers_parts(a, i); part++) {
+            size_t n, m;
+            const uint32_t *x = thole_carriers_part(a, i, part, &n), *y = thole_carriers_part(b, i, part, &m);
+            assert_int_equal(n, m);
+            assert_memory_equal(x, y, n * sizeof *x);
+        }
+    }
+    thole_carriers_release(a);
+    thole_carriers_release(b);
 }
 
 static void carriers_carry(void **state) {
@@ -116,18 +287,26 @@ static void carriers_carry(void **state) {
         dice d = {seed + i * UINT64_C(1000003)};
         judge_case c;
         random_case(&d, &c);
+        c.dims |= 3;
+        if (c.radius == 0)
+            c.radius = 1;
         thole_memory memory = {0};
-        thole_context context = {.memory = &memory, .threads = dice_from(&d, 1, 2)};
+        thole_context context = {.memory = &memory, .threads = dice_from(&d, 1, 2)},
+                      other = {.memory = &memory, .threads = 3};
         thole_network *network;
         thole_windows *windows;
-        thole_barcode *barcode;
+        thole_barcode *barcode, *copy;
         thole_error error;
         run_case_make(&context, &c, &network, &windows);
         thole_zigzag_options options = run_case_options(&c, (uint32_t)dice_from(&d, 0, 4));
         assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_OK);
+        assert_int_equal(thole_zigzag(&other, network, windows, &options, &copy, &error), THOLE_OK);
         for (int t = 0; t < 2 * c.windows - 1; t++)
-            for (uint32_t dim = 0; dim < 2; dim++)
+            for (uint32_t dim = 0; dim < 2; dim++) {
                 carriers += check_position(&context, &c, network, barcode, t, dim);
+                expect_same_carriers(&context, barcode, &other, copy, network, (size_t)t, dim);
+            }
+        thole_barcode_release(copy);
         thole_barcode_release(barcode);
         thole_network_release(network);
         thole_windows_release(windows);
