@@ -1,5 +1,5 @@
 #!/bin/sh
-# Run all groups of tests, or those named (core,lua,cli,writers,docs,browser,install,lint), on what is built in BUILD.
+# Run all groups of tests, or those named (core,lua,cli,writers,docs,browser,install,threads,lint), on what is built in BUILD.
 #
 #     tests/all.sh BUILD [GROUP[,GROUP…]]
 #
@@ -84,6 +84,17 @@ install_group() {
     try "installed library, module and command" sh tests/lint/install.sh "$build"
 }
 
+# What runs in several threads, for the sanitizer that watches them.
+threads() {
+    for source in tests/oracle/test_*.c tests/reference/test_properties.c; do
+        some "$source" && try "${source%.c}" "$build/${source%.c}"
+    done
+    for count in 1 4; do
+        try "report by $count threads" "$build/thole" run --threads $count --out "$logs/threads-$count" recipes/week-report.lua
+    done
+    try "the same report" cmp "$logs/threads-1/week-report.html" "$logs/threads-4/week-report.html"
+}
+
 lint() {
     for script in tests/lint/*.lua; do
         some "$script" && try "$script" "$lua" "$script"
@@ -95,7 +106,7 @@ lint() {
 
 for group in $(echo "$groups" | tr ',' ' '); do
     case $group in
-    core | cli | writers | docs | browser | lint) "$group" ;;
+    core | cli | writers | docs | browser | threads | lint) "$group" ;;
     lua | install) "${group}_group" ;;
     *) echo "unknown group $group" >&2; exit 2 ;;
     esac
