@@ -310,7 +310,11 @@ thole_status thole_barcode_carriers(thole_context *context, const thole_barcode 
     tc_block block;
     thole_carriers *carriers = tb_new(memory, 1, sizeof *carriers);
     uint32_t also = position == 0 || position + 1 == positions ? TC_NONE : (uint32_t)position;
-    thole_status status = tz_run_open(context, network, barcode->windows, &barcode->options, also, &run, error);
+    /* Blocks as the data has them, whatever the barcode was computed with: where classes may be mixed, the mixture
+     * follows the blocks, and the answer should not. */
+    thole_zigzag_options options = barcode->options;
+    options.block = 0;
+    thole_status status = tz_run_open(context, network, barcode->windows, &options, also, &run, error);
     if (status == THOLE_OK && carriers == NULL)
         status = tb_refused(memory, error, "the carriers of bars");
     if (status == THOLE_OK && (int)dim < run.dims)

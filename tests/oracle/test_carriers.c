@@ -255,8 +255,7 @@ static uint64_t check_position(thole_context *context, const judge_case *c, cons
     return n;
 }
 
-/* How many threads there are cannot be seen. (Among classes that begin or end together `block` may choose
- * another; each is judged above.) */
+/* Neither the number of threads nor the block length that the barcode was computed with can be seen. */
 static void expect_same_carriers(thole_context *context, const thole_barcode *barcode, thole_context *other,
                                  const thole_barcode *copy, const thole_network *network, size_t t,
                                  uint32_t dim) {
@@ -300,6 +299,7 @@ static void carriers_carry(void **state) {
         run_case_make(&context, &c, &network, &windows);
         thole_zigzag_options options = run_case_options(&c, (uint32_t)dice_from(&d, 0, 4));
         assert_int_equal(thole_zigzag(&context, network, windows, &options, &barcode, &error), THOLE_OK);
+        options.block = (uint32_t)dice_from(&d, 0, 4);
         assert_int_equal(thole_zigzag(&other, network, windows, &options, &copy, &error), THOLE_OK);
         for (int t = 0; t < 2 * c.windows - 1; t++)
             for (uint32_t dim = 0; dim < 2; dim++) {
